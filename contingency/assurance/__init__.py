@@ -1,0 +1,1 @@
+"""Checks that look for the weaknesses of a contingency before an auditor does."""

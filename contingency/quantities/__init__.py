@@ -1,0 +1,1 @@
+"""Distributions, dependence, draws, percentiles, rounding: arrays in, arrays out."""

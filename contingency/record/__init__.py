@@ -1,0 +1,1 @@
+"""Sign-offs, register of issued reports, seals: bytes in, proof out."""

@@ -1,0 +1,1 @@
+"""The report: wording, charts, pages, PDF.  Computes no figure."""

@@ -1,0 +1,1 @@
+"""What the contingency is: levels, split, allocation, drivers."""

@@ -1,0 +1,1 @@
+"""From one revision to the next: bridge, trend, drawdown."""
