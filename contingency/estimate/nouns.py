@@ -67,6 +67,9 @@ class CostRange(Noun):
     likely: float | None = None
     high: float | None = None
     ends: Ends = Ends()
+    ends_stated: bool = True
+    """False where neither the row nor [ranges] says what low and high mean; the
+    range is then read as limits and an assurance check stops the sign-off."""
     outcomes: tuple[tuple[float, float], ...] = ()
     """discrete: (value, probability); points: (percent not exceeded, value)."""
     written: tuple[str, str, str, str] = ("", "", "", "")
@@ -390,6 +393,10 @@ class Estimate(Noun):
     owner: str = ""
     request_base: float | None = None
     """Base cost of the whole request, where packages cover only part of it."""
+    requested_total: float | None = None
+    """Total that is asked for, where it is not simply the target level."""
+    budget_cap: float | None = None
+    """A ceiling that was known before the analysis, price-date money."""
 
     contingency: ContingencyRule
     ends: Ends | None
