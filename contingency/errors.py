@@ -72,3 +72,125 @@ class UnusableEstimate(InputError):
             rule="An estimate is read whole or not at all.",
             remedy="Correct each of the problems listed; nothing was written.",
         )
+
+
+# --- Records: sign-offs, register, seals, verification ------------------------------
+
+
+class RecordError(ContingencyError):
+    """A record of the report cannot be made or read as asked."""
+
+    slug = "record-error"
+
+
+class DamagedRecord(RecordError):
+    """A file that this program keeps was changed by hand or cut short."""
+
+    slug = "damaged-record"
+
+
+class BusyRecord(RecordError):
+    """Another process is writing the same record."""
+
+    slug = "busy-record"
+
+
+class NoSuchRole(RecordError):
+    """A sign-off in a role that the estimate does not name."""
+
+    slug = "no-such-role"
+
+
+class OtherSignatory(RecordError):
+    """A sign-off by someone else than the person named for the role."""
+
+    slug = "other-signatory"
+
+
+class SamePerson(RecordError):
+    """One person would sign in two roles that must be kept apart."""
+
+    slug = "same-person"
+
+
+class SignOffOutOfTurn(RecordError):
+    """A sign-off before the roles ahead of it have signed the same content."""
+
+    slug = "sign-off-out-of-turn"
+
+
+class IssueRefused(RecordError):
+    """The report cannot be issued; `reasons` names everything in its way."""
+
+    slug = "issue-refused"
+
+    def __init__(self, where: str, reasons: Iterable[str]) -> None:
+        self.reasons = tuple(reasons)
+        super().__init__(
+            where=where,
+            found=" ".join(self.reasons),
+            rule="A report is issued only with every required sign-off in force, "
+            "no stop, no major finding without an answer, and cross-checks passed.",
+            remedy="Settle each of the points named, then issue again; "
+            "nothing was written.",
+        )
+
+
+class AlreadyIssued(RecordError):
+    """The revision has been issued before and no reason for another issue is given."""
+
+    slug = "already-issued"
+
+
+class FolderInTheWay(RecordError):
+    """A folder that the register does not know stands where an issue would go."""
+
+    slug = "folder-in-the-way"
+
+
+class UnreadableReport(RecordError):
+    """A PDF that cannot be taken apart within the limits set for it."""
+
+    slug = "unreadable-report"
+
+
+class TookTooLong(RecordError):
+    """A step of a verification ran into its time limit or its memory limit."""
+
+    slug = "took-too-long"
+
+
+class NoSealField(RecordError):
+    """The PDF has no field for a seal in that role."""
+
+    slug = "no-seal-field"
+
+
+class AlreadySealed(RecordError):
+    """The field of that role holds a seal already."""
+
+    slug = "already-sealed"
+
+
+class BrokenSeal(RecordError):
+    """An earlier seal no longer holds, so another one must not be put on top."""
+
+    slug = "broken-seal"
+
+
+class WrongPassword(RecordError):
+    """The certificate file does not open with the password given."""
+
+    slug = "wrong-password"
+
+
+class UnfitCertificate(RecordError):
+    """The certificate is expired, not yet valid, or not made for signing."""
+
+    slug = "unfit-certificate"
+
+
+class NoTimeStamp(RecordError):
+    """The time-stamp server gave no usable answer."""
+
+    slug = "no-time-stamp"
