@@ -3,7 +3,8 @@
     ContingencyError
     ├── InputError         the files the user wrote cannot be used as they stand
     │   ├── UnusableEstimate      all faults of one folder, reported together
-    │   └── ...                   one class per kind of fault, each with its slug
+    │   └── Fault                 one fault of one file; its kinds, each with its slug,
+    │                             are in contingency/estimate/faults.py
     └── AnalysisError      the files are fine but the question cannot be answered
 
 Each class carries a slug that never changes once released.  ``docs/errors.md``
@@ -12,7 +13,7 @@ has one heading per slug; ``tests/test_errors.py`` keeps the two in step.
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, ClassVar
+from typing import TYPE_CHECKING, ClassVar, Self
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
@@ -58,20 +59,45 @@ class AnalysisError(ContingencyError):
     slug = "analysis-error"
 
 
+MOST_FAULTS_LISTED = 200
+"""Faults of one folder that are listed; the rest is counted.  A choice of ours: a
+list that nobody reads to its end, and still one run per kind of mistake."""
+
+
 class UnusableEstimate(InputError):
     """All faults of one estimate folder, in file order."""
 
     slug = "unusable-estimate"
 
-    def __init__(self, folder: str, faults: Iterable[InputError]) -> None:
-        self.faults = tuple(faults)
-        count = len(self.faults)
+    def __init__(
+        self, folder: str, faults: Iterable[InputError], *, uncounted: int = 0
+    ) -> None:
+        every = tuple(faults)
+        self.faults = every[:MOST_FAULTS_LISTED]
+        """The first faults, in file order."""
+        self.count = len(every) + uncounted
+        """All faults, those that are not listed included."""
+        found = f"{self.count:,} problem{'s' if self.count != 1 else ''} in the files."
+        if self.count > len(self.faults):
+            found += f" The first {len(self.faults)} are listed."
         super().__init__(
             where=folder,
-            found=f"{count} problem{'s' if count != 1 else ''} in the input files.",
+            found=found,
             rule="An estimate is read whole or not at all.",
             remedy="Correct each of the problems listed; nothing was written.",
         )
+
+
+class Fault(InputError):
+    """One fault of one file.  Each kind has one rule, which is its `law`."""
+
+    slug = "fault"
+    law: ClassVar[str] = ""
+
+    @classmethod
+    def at(cls, where: str, found: str, remedy: str) -> Self:
+        """Return the fault at a place such as `packages.csv:14, package P310, low`."""
+        return cls(where=where, found=found, rule=cls.law, remedy=remedy)
 
 
 # --- Records: sign-offs, register, seals, verification ------------------------------
