@@ -5,7 +5,8 @@
     │   ├── UnusableEstimate      all faults of one folder, reported together
     │   └── Fault                 one fault of one file; its kinds, each with its slug,
     │                             are in contingency/estimate/faults.py
-    └── AnalysisError      the files are fine but the question cannot be answered
+    ├── AnalysisError      the files are fine but the question cannot be answered
+    │   └── NoSuchCurve           no curve of a shape fits the figures of a range
 
 Each class carries a slug that never changes once released.  ``docs/errors.md``
 has one heading per slug; ``tests/test_errors.py`` keeps the two in step.
@@ -62,6 +63,15 @@ class AnalysisError(ContingencyError):
 MOST_FAULTS_LISTED = 200
 """Faults of one folder that are listed; the rest is counted.  A choice of ours: a
 list that nobody reads to its end, and still one run per kind of mistake."""
+
+
+class NoSuchCurve(AnalysisError):
+    """No curve of the chosen shape fits the figures of a range.
+
+    Raised without a row; the reading room says which row and column it was.
+    """
+
+    slug = "no-such-curve"
 
 
 class UnusableEstimate(InputError):
