@@ -230,3 +230,21 @@ class NoTimeStamp(RecordError):
     """The time-stamp server gave no usable answer."""
 
     slug = "no-time-stamp"
+
+
+class UnknownAssuranceSetting(InputError):
+    """A name under [assurance] that no check knows."""
+
+    slug = "unknown-assurance-setting"
+
+
+class AssuranceSettingRefused(InputError):
+    """A value under [assurance] that cannot be a threshold."""
+
+    slug = "assurance-setting-refused"
+
+
+class UnknownCheckAnswered(InputError):
+    """An answer in estimate.toml to a check that does not exist."""
+
+    slug = "unknown-check-answered"

@@ -1,4 +1,4 @@
-"""What a check declares, what it finds, and how it ended."""
+"""What a check finds, and how it ended."""
 
 from __future__ import annotations
 
@@ -27,12 +27,25 @@ class Finding:
     source: str
     """Source with its mark, as printed."""
     answer: Answer | None = None
+    """The answer to the finding as a whole."""
+    rows: tuple[str, ...] = ()
+    """Ids of the rows that a finding about the whole estimate rests on."""
+    row_answers: tuple[Answer, ...] = ()
+    """Answers to single rows of `rows`, in their order."""
+
+    @property
+    def is_answered(self) -> bool:
+        """Whether an answer covers the whole finding, or one covers each row."""
+        if self.answer is not None:
+            return True
+        answered = {answer.where for answer in self.row_answers}
+        return bool(self.rows) and answered >= set(self.rows)
 
     @property
     def needs_attention(self) -> bool:
         """A stop, or a major without an answer."""
         return self.severity == "stop" or (
-            self.severity == "major" and self.answer is None
+            self.severity == "major" and not self.is_answered
         )
 
 
@@ -46,4 +59,4 @@ class CheckOutcome:
     reason: str = ""
     """Why a check that is not applicable could not run."""
     threshold: str = ""
-    """The threshold used and its grade, as printed."""
+    """The thresholds used and their grades, as printed."""
