@@ -13,21 +13,23 @@ import pytest
 ROOT = Path(__file__).parents[1]
 PACKAGE = ROOT / "contingency"
 
-QUANTITIES = {"errors", "quantities"}
-SIMULATION = QUANTITIES | {"estimate", "simulation"}
-STUDY = SIMULATION | {"setting", "assurance", "tracking", "study"}
+GROUND = {"errors", "version"}
+SIMULATION = GROUND | {"quantities", "estimate", "simulation"}
+STUDY = SIMULATION | {"setting", "assurance", "tracking", "results", "study"}
 
 FLOORS = {
     "errors": set(),
+    "version": set(),
     "quantities": {"errors"},
-    "estimate": QUANTITIES,
-    "simulation": QUANTITIES | {"estimate"},
+    "estimate": GROUND | {"quantities"},
+    "simulation": GROUND | {"quantities", "estimate"},
     "setting": SIMULATION,
     "assurance": SIMULATION | {"setting"},
     "tracking": SIMULATION | {"setting"},
+    "results": SIMULATION | {"setting", "assurance", "tracking"},
     "study": STUDY - {"study"},
     "report": STUDY,
-    "record": {"errors"},
+    "record": GROUND,
     "verify": STUDY | {"report", "record"},
     "cli": STUDY | {"report", "record", "verify"},
     "__main__": {"cli"},
