@@ -4,11 +4,13 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any
 
+from contingency.version import VERSION
+
 if TYPE_CHECKING:
     from contingency.estimate.reading import read_estimate
     from contingency.study import Study, run_study
 
-__version__ = "0.1.0"
+__version__ = VERSION
 __all__ = ["Study", "__version__", "read_estimate", "run_study"]
 
 _HOMES = {

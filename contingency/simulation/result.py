@@ -68,6 +68,10 @@ class Simulation:
     systemic_removal: Array
     event_removal: Array
     cause_removal: Array
+    """(j,) fall of the target percentile if the cause were held at its middle."""
+
+    correlation_repair: tuple[float, str, str] | None
+    """Largest change made to a correlation that was given, and the pair."""
 
     @property
     def trials(self) -> int:

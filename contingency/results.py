@@ -1,0 +1,214 @@
+"""The results contract: one object that stays readable for years.
+
+``docs/results.md`` lists the keys.  Keys may be added, none is renamed or dropped.
+"""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Sequence
+from typing import Any
+
+from contingency.assurance.findings import CheckOutcome, Finding
+from contingency.assurance.material import Material
+from contingency.setting.allocation import Split
+from contingency.setting.levels import FundingLevel
+from contingency.version import VERSION
+
+FORMAT = "contingency-results/1"
+METHOD = "contingency-method/1"
+DIGITS = 12
+"""Significant digits of a figure.  The last four of a float depend on the order in
+which a processor adds, and say nothing about money."""
+
+
+def as_json(results: dict[str, Any]) -> bytes:
+    """Return results as JSON text in UTF-8, the same bytes for the same inputs."""
+    text = json.dumps(results, indent=2, ensure_ascii=False, allow_nan=False)
+    return (text + "\n").encode("utf-8")
+
+
+def results_of(
+    study: Material,
+    findings: Sequence[Finding],
+    checks_run: Sequence[CheckOutcome],
+) -> dict[str, Any]:
+    """Return the results contract of a study; price-date money, unrounded."""
+    estimate, simulation = study.estimate, study.simulation
+    return {
+        "format": FORMAT,
+        "tool": {"name": "contingency", "version": VERSION},
+        "estimate": {
+            "project": estimate.project,
+            "revision": estimate.revision,
+            "currency": estimate.currency,
+            "price_date": estimate.price_date.isoformat(),
+            "class": estimate.estimate_class,
+            "fingerprint": estimate.fingerprint,
+        },
+        "run": {
+            "seed": simulation.seed,
+            "trials": simulation.trials,
+            "block": simulation.block,
+            "blocks": simulation.blocks,
+            "settled": simulation.settled,
+            "method": METHOD,
+        },
+        "base": figure(estimate.base),
+        "mean": figure(study.mean),
+        "standard_deviation": figure(study.standard_deviation),
+        "chance_base_is_enough": figure(study.chance_base_is_enough),
+        "percentiles": {
+            f"P{percent:02d}": figure(total)
+            for percent, total in enumerate(study.percentiles, start=1)
+        },
+        "levels": [_level(level) for level in study.levels],
+        "target": _target(study.target),
+        "split": _split(study.allocation.split),
+        "allocation": _allocation(study),
+        "second_opinion": _second_opinion(study),
+        "drivers": _drivers(study),
+        "dependence": _dependence(study),
+        "cross_check": _cross_check(study),
+        "findings": [_finding(finding) for finding in findings],
+        "checks_run": [
+            {"check": check.check, "title": check.title, "outcome": check.outcome}
+            for check in checks_run
+        ],
+        "funding": None,
+    }
+
+
+def figure(value: float) -> float:
+    """Return a figure to twelve significant digits."""
+    rounded = float(f"{value:.{DIGITS}g}")
+    return rounded or 0.0
+
+
+def _target(level: FundingLevel) -> dict[str, Any]:
+    return {
+        "level": level.name,
+        "total": figure(level.total),
+        "contingency": figure(level.contingency),
+        "percent_of_base": figure(level.percent_of_base),
+        "interval": [figure(level.low), figure(level.high)],
+    }
+
+
+def _level(level: FundingLevel) -> dict[str, Any]:
+    named = _target(level)
+    return {
+        "level": named.pop("level"),
+        "purpose": level.purpose,
+        "holder": level.holder,
+        **named,
+    }
+
+
+def _split(split: Split) -> dict[str, Any]:
+    return {
+        "ranges": figure(split.ranges),
+        "systemic": figure(split.systemic),
+        "events": figure(split.events),
+        "estimate_uncertainty": figure(split.estimate_uncertainty),
+        "contingency": figure(split.contingency),
+    }
+
+
+def _allocation(study: Material) -> list[dict[str, Any]]:
+    return [
+        {
+            "package": row.package,
+            "name": row.name,
+            "base": figure(row.base),
+            "ranges": figure(row.ranges),
+            "systemic": figure(row.systemic),
+            "events": figure(row.events),
+            "contingency": figure(row.contingency),
+            "expected": figure(row.expected),
+            "margin": figure(row.margin),
+            "variance_share": figure(row.variance_share),
+        }
+        for row in study.allocation.rows
+    ]
+
+
+def _second_opinion(study: Material) -> dict[str, Any]:
+    opinion = study.second_opinion
+    return {
+        "split": _split(opinion.split),
+        "allocation": [
+            {"package": row.package, "contingency": figure(amount)}
+            for row, amount in zip(
+                study.allocation.rows, opinion.contingency, strict=True
+            )
+        ],
+    }
+
+
+def _drivers(study: Material) -> list[dict[str, Any]]:
+    return [
+        {
+            "id": driver.id,
+            "name": driver.name,
+            "kind": driver.kind,
+            "variance_share": figure(driver.variance_share),
+            "mean_shift": figure(driver.mean_shift),
+            "swing": [figure(driver.swing[0]), figure(driver.swing[1])],
+            "removal_effect": figure(driver.removal_effect),
+        }
+        for driver in study.drivers
+    ]
+
+
+def _dependence(study: Material) -> dict[str, Any]:
+    average, repair = study.implied_average_correlation, study.correlation_repair
+    return {
+        "implied_average_correlation": None if average is None else figure(average),
+        "repair": None
+        if repair is None
+        else {"largest_change": figure(repair[0]), "pair": [repair[1], repair[2]]},
+    }
+
+
+def _cross_check(study: Material) -> dict[str, Any]:
+    check = study.cross_check
+    return {
+        "mean": {
+            "simulated": figure(check.mean.simulated),
+            "exact": figure(check.mean.exact),
+        },
+        "standard_deviation": {
+            "simulated": figure(check.standard_deviation.simulated),
+            "exact": figure(check.standard_deviation.exact),
+        },
+        "levels": [
+            {
+                "level": f"P{level.percent:02d}",
+                "simulated": figure(level.simulated),
+                "second_route": figure(level.second_route),
+                "allowed": [figure(level.allowed_low), figure(level.allowed_high)],
+            }
+            for level in check.levels
+        ],
+        "passed": check.passed,
+    }
+
+
+def _finding(finding: Finding) -> dict[str, Any]:
+    answer = finding.answer
+    return {
+        "check": finding.check,
+        "severity": finding.severity,
+        "where": finding.where,
+        "message": finding.message,
+        "source": finding.source,
+        "answer": None
+        if answer is None
+        else {
+            "answer": answer.answer,
+            "by": answer.by,
+            "on": answer.on.isoformat(),
+            "where": answer.where,
+        },
+    }

@@ -1,0 +1,3 @@
+"""The version of the tool, as reports and results print it."""
+
+VERSION = "0.1.0"
