@@ -4,8 +4,13 @@ A check that passes everything checks nothing; these three files are small and m
 here, so that the verdicts on real reports mean something.
 """
 
+from pathlib import Path
+
 import pytest
 from weasyprint import HTML
+
+FONTS = Path(__file__).parents[2] / "report_templates" / "fonts"
+FONT = FONTS / "SourceSansPro-Regular.ttf"
 
 PAGE = """
 <html lang="en-GB"><head><title>A page</title><style>
@@ -18,9 +23,7 @@ body {{ font-family: "Sample"; }}
 @pytest.fixture(scope="module")
 def page():
     """A small page in an embedded font, ready to be written in any variant."""
-    from font_source_sans_pro import font_files_ttf
-
-    return HTML(string=PAGE.format(font="file://" + font_files_ttf["SourceSansPro"]))
+    return HTML(string=PAGE.format(font=FONT.as_uri()))
 
 
 @pytest.mark.parametrize(
