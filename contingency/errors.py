@@ -105,9 +105,12 @@ class Fault(InputError):
     law: ClassVar[str] = ""
 
     @classmethod
-    def at(cls, where: str, found: str, remedy: str) -> Self:
-        """Return the fault at a place such as `packages.csv:14, package P310, low`."""
-        return cls(where=where, found=found, rule=cls.law, remedy=remedy)
+    def at(cls, where: str, found: str, remedy: str, *, rule: str = "") -> Self:
+        """Return the fault at a place such as `packages.csv:14, package P310, low`.
+
+        `rule` is one narrower than the law of the kind, where there is one.
+        """
+        return cls(where=where, found=found, rule=rule or cls.law, remedy=remedy)
 
 
 # --- Records: sign-offs, register, seals, verification ------------------------------
@@ -248,3 +251,21 @@ class UnknownCheckAnswered(InputError):
     """An answer in estimate.toml to a check that does not exist."""
 
     slug = "unknown-check-answered"
+
+
+class OutputBlocked(InputError):
+    """The folder for the report cannot be made or written to."""
+
+    slug = "output-blocked"
+
+
+class CrossCheckFailed(AnalysisError):
+    """Two ways of computing the same figure disagree; no report is made of it."""
+
+    slug = "cross-check-failed"
+
+
+class ClusterUnavailable(InputError):
+    """The cluster that should run the blocks cannot be used."""
+
+    slug = "cluster-unavailable"

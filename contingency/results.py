@@ -70,7 +70,7 @@ def results_of(
         "drivers": _drivers(study),
         "dependence": _dependence(study),
         "cross_check": _cross_check(study),
-        "findings": [_finding(finding) for finding in findings],
+        "findings": [finding_object(finding) for finding in findings],
         "checks_run": [
             {"check": check.check, "title": check.title, "outcome": check.outcome}
             for check in checks_run
@@ -195,7 +195,8 @@ def _cross_check(study: Material) -> dict[str, Any]:
     }
 
 
-def _finding(finding: Finding) -> dict[str, Any]:
+def finding_object(finding: Finding) -> dict[str, Any]:
+    """Return one finding as the contract has it."""
     answer = finding.answer
     return {
         "check": finding.check,

@@ -19,7 +19,7 @@ from contingency.setting.levels import (
 )
 from contingency.simulation.cost_model import build_model
 from contingency.simulation.cross_check import cross_check
-from contingency.simulation.engine import Progress, simulate
+from contingency.simulation.engine import BlockRunner, Progress, simulate
 from contingency.simulation.exact import exact_moments
 from contingency.simulation.result import Simulation
 
@@ -71,7 +71,11 @@ class Study(Material):
 
 
 def run_study(
-    estimate: Estimate, *, threads: int = 1, progress: Progress | None = None
+    estimate: Estimate,
+    *,
+    threads: int = 1,
+    progress: Progress | None = None,
+    runner: BlockRunner | None = None,
 ) -> Study:
     """Return everything that is known about an estimate's contingency.
 
@@ -83,6 +87,8 @@ def run_study(
         Blocks simulated at the same time; changes no figure.
     progress : callable, optional
         Called as ``progress(trials_done, trials_at_most)``.
+    runner : callable, optional
+        Runs blocks in another place; changes no figure.
 
     Returns
     -------
@@ -100,7 +106,9 @@ def run_study(
     >>> study = run_study(read_estimate("example_estimates/footbridge/rev-b"))
     ... # doctest: +SKIP
     """
-    simulation = simulate(estimate, threads=threads, progress=progress)
+    simulation = simulate(
+        estimate, threads=threads, progress=progress, runner=runner
+    )
     material = _material(estimate, simulation)
     findings, checks_run = run_checks(material)
     known = {f.name: getattr(material, f.name) for f in fields(material)}

@@ -31,7 +31,8 @@ FLOORS = {
     "report": STUDY,
     "record": GROUND,
     "verify": STUDY | {"report", "record"},
-    "cli": STUDY | {"report", "record", "verify"},
+    "publish": STUDY | {"report"},
+    "cli": STUDY | {"report", "record", "verify", "publish"},
     "__main__": {"cli"},
 }
 

@@ -1,0 +1,80 @@
+"""Blocks on several machines, by Dask distributed.  The figures do not change.
+
+Needs the extra ``contingency[cluster]``.  A block is a pure function of the estimate
+and the block's number, so a worker that is lost costs time and nothing else: Dask
+runs its blocks again elsewhere.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from typing import Any
+
+from threadpoolctl import threadpool_limits
+
+from contingency.errors import ClusterUnavailable
+from contingency.simulation.blocks import BlockSums, Workspace, run_block
+from contingency.simulation.cost_model import CostModel
+from contingency.simulation.engine import BlockRunner
+
+HERE = "dask"
+"""The word for a cluster of processes on this machine."""
+
+
+def cluster_runner(place: str) -> BlockRunner:
+    """Return a runner that sends blocks to a Dask cluster.
+
+    Parameters
+    ----------
+    place : str
+        ``dask`` for processes on this machine, or the address of a scheduler.
+
+    Raises
+    ------
+    ClusterUnavailable
+        cluster-unavailable.  Dask is not installed, or no scheduler answers.
+    """
+    client = _client(place)
+
+    def run(model: CostModel, centre: float, blocks: range) -> Iterator[BlockSums]:
+        remote = client.scatter(model, broadcast=True)
+        futures = [
+            client.submit(_one_block, remote, block, centre, pure=False)
+            for block in blocks
+        ]
+        # In the order of the blocks, whatever the order in which they end.
+        for future in futures:
+            yield future.result()
+            future.release()
+
+    return run
+
+
+def _one_block(model: CostModel, block: int, centre: float) -> BlockSums:
+    """Run one block on a worker; one thread in each product, as everywhere."""
+    with threadpool_limits(limits=1, user_api="blas"):
+        return run_block(model, block, Workspace(model), centre)
+
+
+def _client(place: str) -> Any:  # noqa: ANN401  (distributed ships no types)
+    try:
+        from distributed import Client, LocalCluster
+    except ImportError as error:
+        raise ClusterUnavailable(
+            where="--workers",
+            found="Dask distributed is not installed.",
+            rule="Blocks on several machines are run by Dask.",
+            remedy="Install the extra: pip install 'contingency[cluster]'.",
+        ) from error
+    try:
+        if place == HERE:
+            cluster = LocalCluster(threads_per_worker=1, dashboard_address=None)
+            return Client(cluster)
+        return Client(place, timeout=10)
+    except (OSError, TimeoutError, ValueError) as error:
+        raise ClusterUnavailable(
+            where=f"--workers {place}",
+            found=f"{error}.",
+            rule=f"PLACE is `{HERE}` or the address of a running scheduler.",
+            remedy="Start a scheduler with `dask scheduler` and give its address.",
+        ) from error
