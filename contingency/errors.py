@@ -269,3 +269,39 @@ class ClusterUnavailable(InputError):
     """The cluster that should run the blocks cannot be used."""
 
     slug = "cluster-unavailable"
+
+
+class ReportError(ContingencyError):
+    """The report cannot be written, though the results are sound."""
+
+    slug = "report-error"
+
+
+class TemplateFault(ReportError):
+    """A template, a style sheet or another file of the templates folder is wrong."""
+
+    slug = "template-fault"
+
+
+class CharacterWithoutFont(ReportError):
+    """A character of the estimate is in none of the report's fonts."""
+
+    slug = "character-without-font"
+
+
+class NoTextEngine(ReportError):
+    """The library that sets text is not installed."""
+
+    slug = "no-text-engine"
+
+
+class AttachmentNameTaken(ReportError):
+    """Two files would be attached to a report under one name."""
+
+    slug = "attachment-name-taken"
+
+
+class CrossCheckFailed(AnalysisError):
+    """The engine and its cross-checks disagree, so no report is written."""
+
+    slug = "cross-check-failed"
