@@ -6,7 +6,9 @@
     │   └── Fault                 one fault of one file; its kinds, each with its slug,
     │                             are in contingency/estimate/faults.py
     ├── AnalysisError      the files are fine but the question cannot be answered
-    │   └── NoSuchCurve           no curve of a shape fits the figures of a range
+    │   ├── NoSuchCurve           no curve of a shape fits the figures of a range
+    │   ├── TooFewTrials          no interval is left around a percentile
+    │   └── PartsDoNotClose       parts and total differ by more than rounding
 
 Each class carries a slug that never changes once released.  ``docs/errors.md``
 has one heading per slug; ``tests/test_errors.py`` keeps the two in step.
@@ -72,6 +74,18 @@ class NoSuchCurve(AnalysisError):
     """
 
     slug = "no-such-curve"
+
+
+class TooFewTrials(AnalysisError):
+    """The interval of a percentile would reach past the smallest or largest trial."""
+
+    slug = "too-few-trials"
+
+
+class PartsDoNotClose(AnalysisError):
+    """Parts and total are further apart than rounding can close."""
+
+    slug = "parts-do-not-close"
 
 
 class UnusableEstimate(InputError):
