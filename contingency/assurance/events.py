@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from contingency.assurance.declaration import (
+    COMMON_PRACTICE,
     Hit,
     NotApplicable,
     Source,
@@ -21,7 +22,6 @@ GREY_BUDGET = Source(
     " contingent risks are often given a probability of 100 %",
     "READ",
 )
-GAO_STEP_9 = Source("GAO-20-195G, survey of step 9", "READ")
 
 NEARLY_CERTAIN = Threshold(
     name="nearly_certain_percent",
@@ -80,6 +80,33 @@ def certain_events(estimate: Estimate, settings: Settings) -> Verdict:
                 " cost with a range than to an event."
             )
             hits.append(Hit(severity="caution", where=event.id, message=message))
+    return hits
+
+
+@input_check(
+    slug="weightless-events",
+    subject="systemic risks and events",
+    title="Events without weight",
+    catches="Rows of the register that cannot move the total.",
+    rule="The chance of an open event is zero, or its cost is zero.",
+    severities=("note",),
+    todo="Estimate the event, or close it.",
+    sources=(COMMON_PRACTICE,),
+)
+def weightless_events(estimate: Estimate, _settings: Settings) -> Verdict:
+    """Find open events that cannot happen or cost nothing."""
+    if not estimate.open_events:
+        return NotApplicable("The estimate has no open events.")
+    hits: list[Hit] = []
+    for event in estimate.open_events:
+        impact = event.impact_used
+        if chance_of(event, estimate) == 0:
+            message = f"{event.label} is open and cannot happen."
+        elif not impact.varies and impact.distribution.mean == 0:
+            message = f"{event.label} is open and costs nothing."
+        else:
+            continue
+        hits.append(Hit(severity="note", where=event.id, message=message))
     return hits
 
 
@@ -157,4 +184,4 @@ def _rare_large(
     )
 
 
-CHECKS = (certain_events, rare_large_events)
+CHECKS = (certain_events, weightless_events, rare_large_events)

@@ -1,4 +1,4 @@
-"""Checks of the ranges: their form and what their ends mean."""
+"""Checks of the ranges side by side: alike, mirrored, leaning, too many."""
 
 from __future__ import annotations
 
@@ -14,8 +14,14 @@ from contingency.assurance.declaration import (
     Source,
     Verdict,
     input_check,
+    result_check,
 )
-from contingency.assurance.rows import ranged_rows, skew_ratio, uncertain_packages
+from contingency.assurance.material import Material
+from contingency.assurance.rows import (
+    ranges_are_linked,
+    skew_ratio,
+    uncertain_packages,
+)
 from contingency.assurance.settings import Settings, Threshold
 from contingency.assurance.wording import counted, listed, percent
 from contingency.estimate.nouns import Estimate, WorkPackage
@@ -34,6 +40,23 @@ FLYVBJERG_2006 = Source(
     "Flyvbjerg, B. (2006), From Nobel Prize to project management: getting risks"
     " right, Project Management Journal 37(3)",
     "READ-title",
+)
+
+RP_41R = Source(
+    "AACE International RP 41R-08, Risk analysis and contingency determination using"
+    " range estimating: attention to items able to move the total by 0.5 %, usually"
+    " 20 or fewer",
+    "MEMORY",
+)
+HOLLMANN_2007 = Source(
+    "Hollmann, J. K. (2007), The Monte-Carlo challenge: a better approach, first page:"
+    " line-by-line simulation as it is often mispractised",
+    "READ",
+)
+GREY_WEAKNESSES = Source(
+    "Grey, S., Weaknesses of common project cost risk modelling methods"
+    " (broadleaf.com.au), introduction",
+    "READ",
 )
 
 COPIED_CAUTION = Threshold(
@@ -84,54 +107,36 @@ LEAST_SKEW = Threshold(
     meaning="smallest median upside",
 )
 
-
-@input_check(
-    slug="ends-undefined",
-    subject="ranges",
-    title="Low and high without a stated meaning",
-    catches=(
-        "A low and a high that one person meant as limits and another as"
-        " percentiles. The same figures then give different contingencies."
-    ),
-    rule=(
-        "Every row with a low and a high has `ends`, in its own row or under"
-        " [ranges]. There is no default."
-    ),
-    severities=("stop",),
-    todo=(
-        "Ask the person who gave the range how often the cost may fall outside it,"
-        " and write limits, P05-P95, P10-P90 or P15-P85 under `ends`."
-    ),
-    sources=(
-        Source(
-            "Joint Agency Cost Schedule Risk and Uncertainty Handbook: eliciting and"
-            " interpreting bounds",
-            "READ-title",
-        ),
-    ),
+MOST_RANGES = Threshold(
+    name="most_unlinked_ranges",
+    default=30,
+    unit="packages",
+    grade="H",
+    meaning="most ranges without a link",
 )
-def ends_undefined(estimate: Estimate, _settings: Settings) -> Verdict:
-    """Find rows whose low and high have no stated meaning."""
-    rows = [row for row in ranged_rows(estimate) if not row.range.ends_stated]
-    if not rows:
-        return []
-    # Widening of a symmetric triangle whose stated ends are P5, P10 or P15:
-    # 1 / (1 - sqrt(2 q)), closed form.
-    factors = [1.0 / (1.0 - np.sqrt(2.0 * q)) for q in (0.05, 0.10, 0.15)]
-    return [
-        Hit(
-            severity="stop",
-            rows=tuple(row.id for row in rows),
-            message=(
-                f"Nothing says what low and high mean for"
-                f" {counted(len(rows), 'row')} ({listed(row.id for row in rows)});"
-                " they were read as limits. If a symmetric range was meant as P05 to"
-                f" P95, its true half-width is {factors[0]:.2f} times the stated one;"
-                f" as P10 to P90 {factors[1]:.2f} times; as P15 to P85"
-                f" {factors[2]:.2f} times."
-            ),
-        )
-    ]
+SMALL_SHARE = Threshold(
+    name="small_range_percent",
+    default=0.5,
+    unit="% of the variance",
+    grade="G",
+    meaning="a range is small below",
+    most=100,
+)
+MOST_SMALL = Threshold(
+    name="small_ranges_percent",
+    default=50,
+    unit="% of the ranges",
+    grade="H",
+    meaning="largest share of small ranges",
+    most=100,
+)
+FEWEST_RANGES = Threshold(
+    name="small_ranges_fewest",
+    default=20,
+    unit="ranges",
+    grade="G",
+    meaning="looks at more than",
+)
 
 
 @input_check(
@@ -277,6 +282,71 @@ def ranges_lean_down(estimate: Estimate, settings: Settings) -> Verdict:
     ]
 
 
+@input_check(
+    slug="many-unlinked-ranges",
+    subject="ranges",
+    title="Too many ranges with nothing in common",
+    catches="Hundreds of separate line ranges that cancel each other out on paper.",
+    rule=(
+        "Number of packages with a range, where no general dependence, no shared"
+        " cause and no correlation links them."
+    ),
+    thresholds=(MOST_RANGES,),
+    severities=("major",),
+    todo="Group the packages, or link them by common causes.",
+    sources=(RP_41R, HOLLMANN_2007, GREY_WEAKNESSES),
+)
+def many_unlinked_ranges(estimate: Estimate, settings: Settings) -> Verdict:
+    """Find long lists of independent ranges."""
+    packages = uncertain_packages(estimate)
+    if ranges_are_linked(estimate) or len(packages) <= settings.number(MOST_RANGES):
+        return []
+    spreads = np.sqrt([p.cost.distribution.variance for p in packages])
+    ratio = float(np.sqrt(np.sum(spreads**2)) / np.sum(spreads))
+    message = (
+        f"{counted(len(packages), 'range')} with nothing in common cancel out on"
+        f" paper: together they spread {percent(ratio)} of the sum of their standard"
+        " deviations."
+    )
+    return [Hit(severity="major", message=message)]
+
+
+@result_check(
+    slug="small-ranges",
+    subject="ranges",
+    title="Ranges too small to matter",
+    catches="Effort spent on lines that cannot move the total.",
+    rule=(
+        "Share of the package ranges that make up less than the threshold of the"
+        " variance, in estimates with many ranges."
+    ),
+    thresholds=(SMALL_SHARE, MOST_SMALL, FEWEST_RANGES),
+    severities=("caution",),
+    todo="Group the small packages and spend the effort on the large ones.",
+    sources=(RP_41R,),
+)
+def small_ranges(material: Material, settings: Settings) -> Verdict:
+    """Find whether most ranges hardly move the total."""
+    drivers = [driver for driver in material.drivers if driver.kind == "range"]
+    if len(drivers) <= settings.number(FEWEST_RANGES):
+        return NotApplicable(
+            f"{counted(len(drivers), 'package range')};"
+            f" it looks at more than {settings.number(FEWEST_RANGES):g}."
+        )
+    small = [
+        d.id
+        for d in drivers
+        if 100 * abs(d.variance_share) < settings.number(SMALL_SHARE)
+    ]
+    if 100 * len(small) <= settings.number(MOST_SMALL) * len(drivers):
+        return []
+    message = (
+        f"{len(small)} of {counted(len(drivers), 'package range')} make up less than"
+        f" {settings.number(SMALL_SHARE):g} % of the variance each: {listed(small)}."
+    )
+    return [Hit(severity="caution", rows=tuple(small), message=message)]
+
+
 def _base_of(packages: Iterable[WorkPackage]) -> float:
     return sum(package.base for package in packages)
 
@@ -309,4 +379,10 @@ def _relative_range(package: WorkPackage) -> _RelativeRange | None:
     )
 
 
-CHECKS = (ends_undefined, copied_ranges, mirrored_ranges, ranges_lean_down)
+CHECKS = (
+    copied_ranges,
+    mirrored_ranges,
+    ranges_lean_down,
+    many_unlinked_ranges,
+    small_ranges,
+)

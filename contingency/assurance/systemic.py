@@ -2,9 +2,17 @@
 
 from __future__ import annotations
 
-from contingency.assurance.declaration import Hit, Source, Verdict, input_check
-from contingency.assurance.settings import Settings
-from contingency.assurance.wording import counted
+from contingency.assurance.declaration import (
+    Hit,
+    NotApplicable,
+    Source,
+    Verdict,
+    input_check,
+    result_check,
+)
+from contingency.assurance.material import Material
+from contingency.assurance.settings import Settings, Threshold
+from contingency.assurance.wording import counted, percent
 from contingency.estimate.nouns import Estimate
 
 RP_42R = Source(
@@ -13,6 +21,7 @@ RP_42R = Source(
     " greatest driver",
     "READ",
 )
+RP_119R = Source("AACE International RP 119R-21, abstract", "READ")
 HOLLMANN_2007 = Source(
     "Hollmann, J. K. (2007), The Monte-Carlo challenge: a better approach, first page",
     "READ",
@@ -21,6 +30,24 @@ FTA_RISK = Source(
     "US Federal Transit Administration oversight procedures: a risk register alone"
     " is not enough, a model of the whole project is needed",
     "READ",
+)
+
+THIN_SHARE = Threshold(
+    name="thin_systemic_percent",
+    default=25,
+    unit="% of the variance",
+    grade="H",
+    meaning="smallest share",
+    most=100,
+)
+EARLY_CLASS = Threshold(
+    name="early_from_class",
+    default=4,
+    unit="",
+    grade="H",
+    meaning="early: class",
+    least=1,
+    most=5,
 )
 
 
@@ -69,4 +96,34 @@ def no_systemic_layer(estimate: Estimate, _settings: Settings) -> Verdict:
     ]
 
 
-CHECKS = (no_systemic_layer,)
+@result_check(
+    slug="thin-systemic-layer",
+    subject="systemic risks and events",
+    title="Systemic risks too small for the class",
+    catches="An early estimate whose spread comes from its lines and events alone.",
+    rule="Share of the variance from systemic risks, for estimates of an early class.",
+    thresholds=(THIN_SHARE, EARLY_CLASS),
+    severities=("caution",),
+    todo="Look again at the size of the systemic risks and at its evidence.",
+    sources=(RP_42R, RP_119R),
+)
+def thin_systemic_layer(material: Material, settings: Settings) -> Verdict:
+    """Find whether an early estimate has hardly any systemic spread."""
+    estimate = material.estimate
+    if estimate.estimate_class is None:
+        return NotApplicable("No estimate class is written under [estimate].")
+    if estimate.estimate_class < settings.number(EARLY_CLASS):
+        return NotApplicable(f"The estimate has class {estimate.estimate_class}.")
+    if not estimate.systemic:
+        return NotApplicable("The estimate has no systemic risks.")
+    share = sum(d.variance_share for d in material.drivers if d.kind == "systemic")
+    if 100 * share >= settings.number(THIN_SHARE):
+        return []
+    message = (
+        f"Systemic risks make up {percent(share)} of the variance of an estimate of"
+        f" class {estimate.estimate_class}."
+    )
+    return [Hit(severity="caution", message=message)]
+
+
+CHECKS = (no_systemic_layer, thin_systemic_layer)

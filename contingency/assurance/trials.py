@@ -2,10 +2,17 @@
 
 from __future__ import annotations
 
-from contingency.assurance.declaration import Hit, Source, Verdict, result_check
+from contingency.assurance.declaration import (
+    Hit,
+    Source,
+    Verdict,
+    input_check,
+    result_check,
+)
 from contingency.assurance.material import Material
 from contingency.assurance.settings import Settings, Threshold
 from contingency.assurance.wording import money, percent
+from contingency.estimate.nouns import Estimate
 
 UNSETTLED_TOTAL = Threshold(
     name="half_width_percent_of_total",
@@ -123,4 +130,30 @@ def cross_check_failed(material: Material, _settings: Settings) -> Verdict:
     return [Hit(severity="stop", message=message)]
 
 
-CHECKS = (unsettled_percentile, cross_check_failed)
+@input_check(
+    slug="not-repeatable",
+    subject="simulation",
+    title="A number that nobody can make again",
+    catches="Results without a record of exactly what went in.",
+    rule="The estimate was read from files and has a fingerprint of all of them.",
+    severities=("stop",),
+    todo="Read the estimate from its folder with read_estimate.",
+    sources=(
+        Source(
+            "GAO-20-195G, chapter on documentation: someone unfamiliar could recreate"
+            " or update the estimate",
+            "READ",
+        ),
+        Source("UK review of quality assurance of analytical models", "READ-title"),
+        Source("UK Government Actuary, review of department spreadsheets", "READ"),
+    ),
+)
+def not_repeatable(estimate: Estimate, _settings: Settings) -> Verdict:
+    """Find estimates whose inputs are not pinned by a fingerprint."""
+    if estimate.fingerprint and estimate.sources:
+        return []
+    message = "The inputs have no fingerprint, so the result cannot be made again."
+    return [Hit(severity="stop", message=message)]
+
+
+CHECKS = (not_repeatable, unsettled_percentile, cross_check_failed)
