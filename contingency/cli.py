@@ -29,8 +29,9 @@ WRONG = 2
 """The input or the call is wrong; nothing was written."""
 
 CAUTION = (
-    "Figures rest on the inputs and assumptions recorded with them.  Your organisation's"
-    " policy, local rules and qualified professional judgement come first."
+    "Figures rest on the inputs and assumptions recorded with them.  Your "
+    "organisation's policy, local rules and qualified professional judgement come "
+    "first."
 )
 
 
@@ -39,15 +40,9 @@ def main(arguments: Sequence[str] | None = None) -> int:
     options = _parser().parse_args(arguments)
     try:
         status: int = options.run(options)
-    except UnusableEstimate as unusable:
-        _complain(_faults_laid_out(unusable))
-        return WRONG
-    except InputError as error:
-        _complain(error.laid_out())
-        return WRONG
     except ContingencyError as error:
-        _complain(error.laid_out())
-        return ATTENTION
+        _complain(_laid_out(error))
+        return WRONG if isinstance(error, InputError) else ATTENTION
     except BrokenPipeError:
         # The reader of our output has gone, as `head` does; there is nobody to tell.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
@@ -55,7 +50,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
     except KeyboardInterrupt:
         _complain("Stopped; nothing was written.")
         return 130
-    except Exception as error:
+    except Exception as error:  # noqa: BLE001  (the last resort, and it tells)
         if options.debug:
             traceback.print_exc()
         _complain(
@@ -71,10 +66,12 @@ def _complain(text: str) -> None:
     print(text, file=sys.stderr)
 
 
-def _faults_laid_out(unusable: UnusableEstimate) -> str:
-    """Return every fault of an estimate, then the count."""
-    faults = [fault.laid_out() for fault in unusable.faults]
-    return "\n\n".join([*faults, f"{unusable.where}: {unusable.found} {unusable.remedy}"])
+def _laid_out(error: ContingencyError) -> str:
+    """Return an error in its parts; of an estimate every fault, then the count."""
+    if not isinstance(error, UnusableEstimate):
+        return error.laid_out()
+    faults = [fault.laid_out() for fault in error.faults]
+    return "\n\n".join([*faults, f"{error.where}: {error.found} {error.remedy}"])
 
 
 # --------------------------------------------------------------------------------------
@@ -240,7 +237,8 @@ def _moment(options: argparse.Namespace) -> Any:  # noqa: ANN401  (a datetime)
     """
     import datetime as dt
 
-    day = options.date or dt.datetime.now(dt.UTC).date()  # noqa: TID251  (the top floor)
+    today = dt.datetime.now(dt.UTC).date()  # noqa: TID251  (here the clock enters)
+    day = options.date or today
     return dt.datetime.combine(day, dt.time(), tzinfo=dt.UTC)
 
 
@@ -315,7 +313,10 @@ def _command(
 
 def _add_estimate(command: argparse.ArgumentParser) -> None:
     command.add_argument(
-        "estimate", type=Path, metavar="ESTIMATE", help="folder of one estimate revision"
+        "estimate",
+        type=Path,
+        metavar="ESTIMATE",
+        help="folder of one estimate revision",
     )
 
 

@@ -142,8 +142,8 @@ def _put(path: Path, content: bytes) -> Path:
         with os.fdopen(handle, "wb") as file:
             file.write(content)
         # mkstemp keeps others out; a report is for reading, as the umask allows.
-        os.chmod(temporary, 0o666 & ~_umask())
-        os.replace(temporary, path)
+        Path(temporary).chmod(0o666 & ~_umask())
+        Path(temporary).replace(path)
     except BaseException:
         Path(temporary).unlink(missing_ok=True)
         raise

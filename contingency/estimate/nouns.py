@@ -10,7 +10,7 @@ from __future__ import annotations
 import datetime as dt
 from enum import StrEnum
 from functools import cached_property
-from typing import Literal
+from typing import Literal, Self
 
 from pydantic import BaseModel, ConfigDict
 
@@ -25,6 +25,13 @@ class Noun(BaseModel):
     """A frozen record; unknown fields are refused."""
 
     model_config = ConfigDict(frozen=True, extra="forbid")
+
+    def __copy__(self) -> Self:
+        """Return a copy without what was derived, for a field may change next."""
+        copied = super().__copy__()
+        for name in copied.__dict__.keys() - type(self).model_fields.keys():
+            del copied.__dict__[name]
+        return copied
 
 
 class ShapeName(StrEnum):

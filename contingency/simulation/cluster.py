@@ -58,7 +58,7 @@ def _one_block(model: CostModel, block: int, centre: float) -> BlockSums:
 
 def _client(place: str) -> Any:  # noqa: ANN401  (distributed ships no types)
     try:
-        from distributed import Client, LocalCluster
+        import distributed
     except ImportError as error:
         raise ClusterUnavailable(
             where="--workers",
@@ -66,11 +66,12 @@ def _client(place: str) -> Any:  # noqa: ANN401  (distributed ships no types)
             rule="Blocks on several machines are run by Dask.",
             remedy="Install the extra: pip install 'contingency[cluster]'.",
         ) from error
+    connect: Any = distributed.Client
+    start: Any = distributed.LocalCluster
     try:
         if place == HERE:
-            cluster = LocalCluster(threads_per_worker=1, dashboard_address=None)
-            return Client(cluster)
-        return Client(place, timeout=10)
+            return connect(start(threads_per_worker=1, dashboard_address=None))
+        return connect(place, timeout=10)
     except (OSError, TimeoutError, ValueError) as error:
         raise ClusterUnavailable(
             where=f"--workers {place}",

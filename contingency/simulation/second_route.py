@@ -14,7 +14,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 from scipy import optimize, stats
-from scipy.interpolate import PchipInterpolator
+from scipy.interpolate import CubicHermiteSpline, PchipInterpolator
 
 from contingency.estimate.nouns import CostRange, Estimate, RiskEvent, ShapeName
 
@@ -159,10 +159,11 @@ def _discrete(outcomes: tuple[tuple[float, float], ...]) -> Quantile:
 def _points(outcomes: tuple[tuple[float, float], ...]) -> Quantile:
     percents, values = (np.array(column) for column in zip(*outcomes, strict=True))
     score = stats.norm.ppf(percents / 100)
-    if score.size == 2:
-        spread = (values[1] - values[0]) / (score[1] - score[0])
-        return stats.norm(values[0] - spread * score[0], spread).ppf
-    curve = PchipInterpolator(score, values)
+    secant = np.diff(values) / np.diff(score)
+    slopes = PchipInterpolator(score, values).derivative()(score)
+    # Beyond the outermost points the curve is the straight line to their neighbours.
+    slopes[0], slopes[-1] = secant[0], secant[-1]
+    curve = CubicHermiteSpline(score, values, slopes)
     slope = curve.derivative()
 
     def quantile(p: Array) -> Array:
