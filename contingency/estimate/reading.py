@@ -1,0 +1,128 @@
+"""Read an estimate folder into an Estimate, or say everything that is wrong with it.
+
+The files depend on one another in one direction: settings and causes say how
+packages are read, packages say what systemic risks, events and correlations may
+name.  A fault in one file hides no fault in another; what rests on something that
+could not be read is not judged.
+"""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+from contingency.estimate import causes as causes_csv
+from contingency.estimate import events as events_csv
+from contingency.estimate import packages as packages_csv
+from contingency.estimate import systemic as systemic_csv
+from contingency.estimate.fault_list import FaultList
+from contingency.estimate.fingerprint import fingerprint
+from contingency.estimate.folder import CARRIED, EstimateFolder
+from contingency.estimate.links import tie
+from contingency.estimate.nouns import Estimate
+from contingency.estimate.packages import PackageRules, Packages
+from contingency.estimate.ranges import EndsRule
+from contingency.estimate.settings import Settings, read_settings
+from contingency.estimate.tables import Table, read_table
+
+LAYOUTS = (
+    packages_csv.LAYOUT,
+    systemic_csv.LAYOUT,
+    events_csv.LAYOUT,
+    causes_csv.CAUSES,
+    causes_csv.CORRELATIONS,
+)
+"""The tables of an estimate folder, in the order of docs/inputs.md."""
+
+
+def read_estimate(folder: Path | str) -> Estimate:
+    """Return the estimate that a folder holds.
+
+    Parameters
+    ----------
+    folder : path
+        One revision of one estimate: estimate.toml, packages.csv and what
+        ``docs/inputs.md`` lists beside them.
+
+    Returns
+    -------
+    Estimate
+        Amounts in the estimate's currency at its price date; percent resolved.
+
+    Raises
+    ------
+    UnusableEstimate
+        unusable-estimate.  Its `faults` are all problems of the folder, in file order.
+    """
+    faults = FaultList()
+    here = EstimateFolder.open(Path(folder), faults)
+    estimate = _read(here, faults) if here is not None else None
+    if faults or estimate is None:
+        raise faults.error(str(folder))
+    return estimate.model_copy(update={"fingerprint": fingerprint(estimate)})
+
+
+def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
+    """Return the estimate; None, or a part of it, where any fault was noted."""
+    text = folder.text("estimate.toml")
+    settings = read_settings(text, faults) if text is not None else None
+    tables = {layout.file: read_table(folder, layout, faults) for layout in LAYOUTS}
+    table = tables["causes.csv"]
+    causes = causes_csv.read_causes(table, folder) if table else ()
+    ends = _ends_rule(settings)
+    packages = _packages(tables, folder, ends, settings)
+    table = tables["systemic.csv"]
+    risks = systemic_csv.read_systemic(table, folder, ends, packages) if table else ()
+    table = tables["events.csv"]
+    events = events_csv.read_events(table, folder, ends, packages) if table else ()
+    events = tie(table, events) if table else events
+    table = tables["correlations.csv"]
+    pairs = causes_csv.read_correlations(table, packages) if table else ()
+    causes_csv.refuse_both(table, tables["packages.csv"], faults)
+    for name in CARRIED:
+        if folder.has(name):
+            folder.carry(name)
+    folder.refuse_misnamed()
+    if faults or settings is None or packages is None:
+        return None
+    return Estimate(
+        **settings.header,
+        contingency=settings.contingency,
+        ends=settings.ends,
+        general_dependence=settings.general_dependence,
+        run=settings.run,
+        statements=settings.statements,
+        sign_offs=settings.sign_offs,
+        answers=settings.answers,
+        assurance=settings.assurance,
+        packages=packages.read,
+        systemic=risks,
+        events=events,
+        causes=causes,
+        correlations=pairs,
+        sources=folder.sources,
+    )
+
+
+def _ends_rule(settings: Settings | None) -> EndsRule:
+    """Return what low and high mean where a row does not say it."""
+    if settings is None:
+        return EndsRule(default=None, is_readable=False)
+    return EndsRule(default=settings.ends, is_readable=settings.ends_are_readable)
+
+
+def _packages(
+    tables: dict[str, Table | None],
+    folder: EstimateFolder,
+    ends: EndsRule,
+    settings: Settings | None,
+) -> Packages | None:
+    """Return what packages.csv holds; None where it cannot be read at all."""
+    table, causes = tables["packages.csv"], tables["causes.csv"]
+    if table is None:
+        return None
+    known: frozenset[str] | None = frozenset(causes.ids) if causes else frozenset()
+    if causes is None and folder.has("causes.csv"):
+        known = None
+    dependence = settings.general_dependence if settings else None
+    rules = PackageRules(ends=ends, causes=known, general_dependence=dependence or 0.0)
+    return packages_csv.read_packages(table, folder, rules)
