@@ -39,9 +39,14 @@ class MomentCheck:
     """Largest difference that passes: four standard errors."""
 
     @property
+    def difference(self) -> float:
+        """Simulated less exact."""
+        return self.simulated - self.exact
+
+    @property
     def passed(self) -> bool:
         """Whether the two agree."""
-        return abs(self.simulated - self.exact) <= self.allowed
+        return abs(self.difference) <= self.allowed
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
