@@ -223,11 +223,11 @@ def _bounded(
         return stats.beta(1 + 4 * place, 5 - 4 * place, a, width)
 
     if ends is None:
-        return law(low, high).ppf
+        return _quantile(law(low, high))
     if likely is None:
         step = (high - low) / (ends[1] - ends[0])
         start = low - step * ends[0]
-        return law(start, start + step).ppf
+        return _quantile(law(start, start + step))
     width = high - low
 
     def miss(outward: Array) -> list[float]:
@@ -239,4 +239,9 @@ def _bounded(
     solved = optimize.least_squares(miss, [-1.5, -1.5], xtol=1e-14, ftol=1e-14)
     a = min(low, likely) - width * float(np.exp(solved.x[0]))
     b = max(high, likely) + width * float(np.exp(solved.x[1]))
-    return law(a, b).ppf
+    return _quantile(law(a, b))
+
+
+def _quantile(law: Any) -> Quantile:  # noqa: ANN401  (a frozen distribution)
+    """Return the quantile function of a frozen distribution."""
+    return lambda p: np.asarray(law.ppf(p), dtype=np.float64)
