@@ -160,9 +160,9 @@ def total_fits_the_cap(material: Material, settings: Settings) -> Verdict:
         return []
     currency = material.estimate.currency
     message = (
-        f"At {material.target.name} the total, {money(material.target.total, currency)},"
-        f" lies within {percent(abs(gap), 2)} of the ceiling of {money(cap, currency)}"
-        " that was known before."
+        f"The total of {money(material.target.total, currency)} at"
+        f" {material.target.name} lies within {percent(abs(gap), 2)} of the ceiling"
+        f" of {money(cap, currency)} that was known before."
     )
     return [Hit(severity="caution", message=message)]
 
@@ -174,9 +174,8 @@ def total_fits_the_cap(material: Material, settings: Settings) -> Verdict:
     catches="A request made of the package percentiles added up.",
     rule=(
         "requested_total, where one is written, against the total at the target and"
-        " against the sum of the packages' own percentiles: a stop where the sum is"
-        " the nearer one, major where the request lies outside the interval of the"
-        " target by more than the gap."
+        " against the sum of the packages' own percentiles: a stop where it is that"
+        " sum, major where it is neither, within the gap."
     ),
     thresholds=(REQUEST_GAP,),
     severities=("stop", "major"),
@@ -199,23 +198,24 @@ def added_percentiles(material: Material, settings: Settings) -> Verdict:
             "No requested_total is written under [estimate]: the request is the level"
             " itself, from totals simulated jointly."
         )
-    if abs(asked - target.total) <= _request_gap(material, settings):
+    gap = _request_gap(material, settings)
+    if abs(asked - target.total) <= gap:
         return []
     currency = material.estimate.currency
     summed = _sum_of_percentiles(material)
     reached = sum(asked >= total for total in material.percentiles)
     really = f"P{reached:02d}" if reached else "less than P01"
-    near_sum = abs(asked - summed) < abs(asked - target.total)
+    is_sum = abs(asked - summed) <= gap
     message = (
         f"{money(asked, currency)} is asked for; {target.name} of the project is"
         f" {money(target.total, currency)}. The request is really {really}."
     )
-    if near_sum:
+    if is_sum:
         message += (
             f" The packages' own {target.name} added up give {money(summed, currency)},"
             " which is not a level of the project."
         )
-    return [Hit(severity="stop" if near_sum else "major", message=message)]
+    return [Hit(severity="stop" if is_sum else "major", message=message)]
 
 
 def _request_gap(material: Material, settings: Settings) -> float:

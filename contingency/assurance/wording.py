@@ -67,6 +67,8 @@ def words_found(text: str, words: Sequence[str]) -> list[str]:
 
 
 def _significant(number: float) -> str:
+    if not math.isfinite(number):
+        return "not a number"
     if number == 0:
         return "0"
     rounded = float(f"{number:.3g}")
