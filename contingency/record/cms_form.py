@@ -1,0 +1,236 @@
+"""Whether the signature inside a seal is written in the one form that it can have.
+
+A signature (CMS, RFC 5652) has parts that it does not cover itself: algorithm names,
+version numbers, the certificates that it carries along.  A reader that skips over them
+would miss a changed byte there.  So each of these parts is held against what it must
+be, given the parts that are covered.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from hashlib import sha256, sha384, sha512
+from typing import Any
+
+from asn1crypto import cms, core, tsp
+from asn1crypto import x509 as asn1_x509
+from cryptography import x509
+from cryptography.exceptions import InvalidSignature
+
+_DIGESTS = {"sha256": sha256, "sha384": sha384, "sha512": sha512}
+
+_ALGORITHMS = frozenset({"rsassa_pkcs1v15", "rsassa_pss", "ecdsa"})
+
+# Attributes of a signature, by number: asn1crypto knows their names only once
+# pyHanko has been imported.
+_SIGNING_CERTIFICATE = "1.2.840.113549.1.9.16.2.12"
+_SIGNING_CERTIFICATE_V2 = "1.2.840.113549.1.9.16.2.47"
+_TIME_STAMP = "1.2.840.113549.1.9.16.2.14"
+
+
+def signature_in(contents: str) -> tuple[bytes, tuple[str, ...]]:
+    """Return the signature in the hexadecimal text of /Contents, and what is odd.
+
+    Parameters
+    ----------
+    contents : str
+        Between the angle brackets, as the file has it.
+    """
+    faults = []
+    if contents not in {contents.upper(), contents.lower()}:
+        faults.append("its hexadecimal digits mix capitals and small letters")
+    try:
+        padded = bytes.fromhex(contents)
+    except ValueError:
+        return b"", ("it is not written in hexadecimal digits",)
+    if len(contents) != 2 * len(padded):
+        faults.append("its hexadecimal digits are spaced out")
+    length = _length(padded)
+    if length is None:
+        return b"", (*faults, "it does not begin as a signature does")
+    if padded[length:].strip(b"\0"):
+        faults.append("something stands behind it")
+    return padded[:length], tuple(faults)
+
+
+def form_faults(signature: bytes) -> tuple[str, ...]:
+    """Return in words what is odd in the parts that a signature does not cover.
+
+    Raises
+    ------
+    ValueError, TypeError, KeyError
+        Where it cannot be read at all.
+    """
+    content = cms.ContentInfo.load(signature, strict=True)
+    if content["content_type"].native != "signed_data":
+        return ("it is no signature",)
+    signed = content["content"]
+    faults = list(_signed_data_faults(signed))
+    if signed["encap_content_info"]["content_type"].native != "data":
+        faults.append("it claims to hold a document of its own")
+    if signed["encap_content_info"]["content"].native is not None:
+        faults.append("it holds a document of its own")
+    if signed["version"].native != "v1":
+        faults.append("its version is another")
+    faults += _unsigned_faults(signed["signer_infos"][0])
+    if _parts(signature, force=False) != _parts(signature, force=True):
+        faults.append("it is not written in the one form of DER")
+    return tuple(faults)
+
+
+def _signed_data_faults(signed: Any) -> Iterator[str]:  # noqa: ANN401
+    """Give what is odd in the uncovered parts of signed data of any kind."""
+    if len(signed["signer_infos"]) != 1:
+        yield "it has not one signer"
+        return
+    (signer,) = signed["signer_infos"]
+    if signer["version"].native != "v1" or signer["sid"].name != (
+        "issuer_and_serial_number"
+    ):
+        yield "its signer is named in an unusual way"
+        return
+    if not isinstance(signed["crls"], core.Void):
+        yield "it carries lists of revoked certificates"
+    yield from _algorithm_faults(signed, signer)
+    certificates = [choice.chosen for choice in signed["certificates"]]
+    if not all(isinstance(c, asn1_x509.Certificate) for c in certificates):
+        yield "it carries something that is no certificate"
+        return
+    yield from _certificate_faults(signer, certificates)
+
+
+def _algorithm_faults(signed: Any, signer: Any) -> Iterator[str]:  # noqa: ANN401
+    name = signer["digest_algorithm"]["algorithm"].native
+    if name not in _DIGESTS:
+        yield f"its digest is {name}"
+    listed = [one["algorithm"].native for one in signed["digest_algorithms"]]
+    if listed != [name]:
+        yield "it names several digests"
+    algorithms = [signer["digest_algorithm"], *signed["digest_algorithms"]]
+    for one in algorithms:
+        if one["parameters"].dump() not in {b"", b"\x05\x00"}:
+            yield "its digest has parameters"
+    signing = signer["signature_algorithm"]
+    kind = signing.signature_algo
+    if kind not in _ALGORITHMS:
+        yield f"its algorithm is {kind}"
+    elif kind != "rsassa_pss":
+        if signing["parameters"].dump() not in {b"", b"\x05\x00"}:
+            yield "its algorithm has parameters"
+        named = signing["algorithm"].native
+        if named != kind and not named.startswith(name):
+            yield "its algorithm names another digest"
+
+
+def _certificate_faults(signer: Any, certificates: Sequence[Any]) -> Iterator[str]:  # noqa: ANN401
+    """Give which certificates are not what the signature or each other say."""
+    holder = [
+        c
+        for c in certificates
+        if c.issuer == signer["sid"].chosen["issuer"]
+        and c.serial_number == signer["sid"].chosen["serial_number"].native
+    ]
+    if len(holder) != 1:
+        yield "the certificate of its signer is not in it"
+        return
+    if not _is_named_inside(signer, holder[0]):
+        yield "the certificate of its signer is not the one that was signed with"
+    loaded = [x509.load_der_x509_certificate(c.dump()) for c in certificates]
+    if len({c.dump() for c in certificates}) != len(certificates):
+        yield "it carries a certificate twice"
+    for one in loaded:
+        issuers = [other for other in loaded if other.subject == one.issuer]
+        if issuers and not any(_issued(one, issuer) for issuer in issuers):
+            yield f"the certificate of {one.subject.rfc4514_string()} is damaged"
+        elif not issuers and one is not loaded[certificates.index(holder[0])]:
+            # Nothing in here vouches for it, so nothing would show a change in it.
+            if any(one.subject == other.issuer for other in loaded):
+                continue  # it issued another one: a change shows there or in a path
+            yield f"the certificate of {one.subject.rfc4514_string()} has no use"
+
+
+def _is_named_inside(signer: Any, certificate: Any) -> bool:  # noqa: ANN401
+    """Whether the covered part names this certificate by its digest (RFC 5035)."""
+    for attribute in signer["signed_attrs"]:
+        kind = attribute["type"].dotted
+        if kind == _SIGNING_CERTIFICATE_V2:
+            value = tsp.SigningCertificateV2.load(attribute["values"][0].dump())
+            first = value["certs"][0]
+            name = first["hash_algorithm"]["algorithm"].native
+            digest = _DIGESTS[name](certificate.dump()).digest()
+            return bool(first["cert_hash"].native == digest)
+        if kind == _SIGNING_CERTIFICATE:
+            # Time-stamp servers still use the older form, with SHA-1 (RFC 2634).
+            old = tsp.SigningCertificate.load(attribute["values"][0].dump())
+            return bool(old["certs"][0]["cert_hash"].native == certificate.sha1)
+    return False
+
+
+def _issued(certificate: x509.Certificate, issuer: x509.Certificate) -> bool:
+    try:
+        certificate.verify_directly_issued_by(issuer)
+    except (InvalidSignature, ValueError, TypeError):
+        return False
+    return True
+
+
+def _unsigned_faults(signer: Any) -> Iterator[str]:  # noqa: ANN401
+    """Give what is odd beside the signature: only one time stamp may stand there."""
+    attributes = signer["unsigned_attrs"]
+    if isinstance(attributes, core.Void):
+        return
+    kinds = [attribute["type"].dotted for attribute in attributes]
+    if kinds != [_TIME_STAMP] or len(attributes[0]["values"]) != 1:
+        yield "something other than one time stamp stands beside it"
+        return
+    token = cms.ContentInfo.load(attributes[0]["values"][0].dump())
+    if token["content_type"].native != "signed_data":
+        yield "its time stamp is no signature"
+        return
+    for fault in _signed_data_faults(token["content"]):
+        yield f"in its time stamp: {fault}"
+    stamped_by = token["content"]["signer_infos"][0]["unsigned_attrs"]
+    if not isinstance(stamped_by, core.Void):
+        yield "something stands beside its time stamp"
+
+
+def _parts(signature: bytes, *, force: bool) -> bytes:
+    """Return a signature part by part, as read or (by force) written anew.
+
+    Its time stamp was made elsewhere, in whatever form of ASN.1, and is left out.
+    """
+    content = cms.ContentInfo.load(signature, strict=True)
+    signed = content["content"]
+    (signer,) = signed["signer_infos"]
+    parts = [
+        signed[key].dump(force=force)
+        for key in ("version", "digest_algorithms", "encap_content_info")
+    ]
+    parts += sorted(one.dump(force=force) for one in signed["certificates"])
+    parts += [
+        signer[key].dump(force=force)
+        for key in (
+            "version",
+            "sid",
+            "digest_algorithm",
+            "signed_attrs",
+            "signature_algorithm",
+            "signature",
+        )
+    ]
+    return b"".join(parts)
+
+
+def _length(padded: bytes) -> int | None:
+    """Return the length of the DER object at the start; None if there is none."""
+    if len(padded) < 2 or padded[0] != 0x30:
+        return None
+    first = padded[1]
+    if first < 0x80:
+        return 2 + first
+    size = first & 0x7F
+    if not 1 <= size <= 4 or len(padded) < 2 + size or padded[2] == 0:
+        return None
+    length = int.from_bytes(padded[2 : 2 + size], "big")
+    whole = 2 + size + length
+    return whole if length >= 0x80 and whole <= len(padded) else None
