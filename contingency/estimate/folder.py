@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import codecs
 import stat
+from collections.abc import Mapping
 from pathlib import Path
 
 from contingency.estimate.fault_list import (
@@ -56,6 +57,16 @@ class EstimateFolder:
         self.faults = faults
         self._names = names
         self._read: dict[str, bytes] = {}
+        self._held: Mapping[str, bytes] | None = None
+
+    @classmethod
+    def held(
+        cls, files: Mapping[str, bytes], faults: FaultList, *, where: str
+    ) -> EstimateFolder:
+        """Return a folder that is held in memory: no name of it touches the disk."""
+        folder = cls(Path(where), frozenset(files), faults)
+        folder._held = files
+        return folder
 
     @classmethod
     def open(cls, path: Path, faults: FaultList) -> EstimateFolder | None:
@@ -139,6 +150,14 @@ class EstimateFolder:
         """Return the content of a file and keep it; None, and a fault, if unfit."""
         if name in self._read:
             return self._read[name]
+        if self._held is not None:
+            content = self._held[name]
+            problem = _too_large(name, len(content), largest)
+            if problem is None:
+                self._read[name] = content
+                return content
+            self.faults.add(place, problem)
+            return None
         path = self.path / name
         try:
             problem = self._unfit(path, largest)
@@ -166,12 +185,17 @@ class EstimateFolder:
         if path.is_symlink() and path.resolve().parent != self.path.resolve():
             found = f"{shown(path.name)} is a link that leads out of the folder."
             return Problem(NotAFile, found, remedy)
-        if about.st_size > largest:
-            size, limit = about.st_size / 2**20, largest // 2**20
-            found = f"{shown(path.name)} has {size:,.1f} MB; at most {limit} are read."
-            remedy = "Remove what does not belong to the estimate, such as empty rows."
-            return Problem(FileTooLarge, found, remedy)
+        return _too_large(path.name, about.st_size, largest)
+
+
+def _too_large(name: str, size: int, largest: int) -> Problem | None:
+    """Return that a file is too large to be read, if it is."""
+    if size <= largest:
         return None
+    limit = largest // 2**20
+    found = f"{shown(name)} has {size / 2**20:,.1f} MB; at most {limit} are read."
+    remedy = "Remove what does not belong to the estimate, such as empty rows."
+    return Problem(FileTooLarge, found, remedy)
 
 
 def _decoded(content: bytes) -> str | tuple[int, Problem]:

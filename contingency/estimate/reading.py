@@ -8,6 +8,7 @@ could not be read is not judged.
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from pathlib import Path
 
 from contingency.estimate import causes as causes_csv
@@ -55,9 +56,33 @@ def read_estimate(folder: Path | str) -> Estimate:
     """
     faults = FaultList()
     here = EstimateFolder.open(Path(folder), faults)
-    estimate = _read(here, faults) if here is not None else None
+    return _sound(here, faults, where=str(folder))
+
+
+def read_held_estimate(files: Mapping[str, bytes], *, where: str) -> Estimate:
+    """Return the estimate in files that are held in memory, as of a report.
+
+    Parameters
+    ----------
+    files : mapping
+        Content by name.  No name is used as a path.
+    where : str
+        What holds them, for messages.
+
+    Raises
+    ------
+    UnusableEstimate
+        unusable-estimate.
+    """
+    faults = FaultList()
+    return _sound(EstimateFolder.held(files, faults, where=where), faults, where=where)
+
+
+def _sound(folder: EstimateFolder | None, faults: FaultList, *, where: str) -> Estimate:
+    """Return the estimate with its fingerprint, or raise all that was noted."""
+    estimate = _read(folder, faults) if folder is not None else None
     if faults or estimate is None:
-        raise faults.error(str(folder))
+        raise faults.error(where)
     return estimate.model_copy(update={"fingerprint": fingerprint(estimate)})
 
 
