@@ -58,8 +58,8 @@ def form_faults(signature: bytes) -> tuple[str, ...]:
 
     Raises
     ------
-    ValueError, TypeError, KeyError
-        Where it cannot be read at all.
+    Exception
+        Of any kind, from the libraries, where it cannot be read at all.
     """
     content = cms.ContentInfo.load(signature, strict=True)
     if content["content_type"].native != "signed_data":

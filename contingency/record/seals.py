@@ -57,7 +57,7 @@ def field_name(role: str) -> str:
     >>> field_name("prepared"), field_name("Risk owner")
     ('sig_prepared', 'sig_risk_owner')
     """
-    return PREFIX + re.sub(r"\W+", "_", role.strip().casefold())
+    return PREFIX + re.sub(r"[^a-z0-9]+", "_", role.lower()).strip("_")
 
 
 def seal_fields(pdf: bytes) -> tuple[SealField, ...]:
@@ -159,7 +159,7 @@ def _field(thing: Any, pages: dict[Any, int]) -> SealField:  # noqa: ANN401
 def _empty_field(pdf: bytes, role: str) -> SealField:
     fields = seal_fields(pdf)
     for field in fields:
-        if field.name == field_name(role):
+        if field.name in {field_name(role), PREFIX + role}:
             if field.is_sealed:
                 raise AlreadySealed(
                     where=f'the field of "{role}"',
