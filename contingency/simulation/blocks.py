@@ -7,7 +7,7 @@ number of trials.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 from contingency.quantities.draws import BLOCK, Source, scores, strata
 from contingency.quantities.percentiles import rank
 from contingency.simulation.cost_model import CostModel
-from contingency.simulation.events import draw_events
+from contingency.simulation.events import DrawnEvents, draw_events
 
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
@@ -121,6 +121,45 @@ def run_block(
         - _block_quantile(total - uplift * acting_cost, model.target),
         event_removal=quantile - _block_quantile(total - drawn.cost, model.target),
         cause_removal=quantile - _block_quantile(total - without_cause, model.target),
+    )
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class DrawnBlock:
+    """One block with every trial of every input kept; axes as in the cost model."""
+
+    value: Array
+    """(k, n) range values, money."""
+    uplift: Array
+    """(s, n) systemic uplifts, fractions."""
+    events: DrawnEvents
+
+    def factor(self, model: CostModel) -> Array:
+        """Return the (k, n) factor of all systemic risks on each package."""
+        return np.asarray((1.0 + model.patterns @ self.uplift)[model.pattern_of])
+
+    def total(self, model: CostModel) -> Array:
+        """Return the (n,) total cost, money."""
+        by_pattern = _pattern_rows(model) @ self.value  # (g, n)
+        factor = 1.0 + model.patterns @ self.uplift
+        estimate = np.einsum("gn,gn->n", by_pattern, factor)
+        return np.asarray(estimate + self.events.cost.sum(axis=0))
+
+
+def draw_block(model: CostModel, block: int, work: Workspace) -> DrawnBlock:
+    """Return one block trial by trial, and none of its sums: for what-if questions.
+
+    The draws are those of `run_block` to the last bit.
+    """
+    uplift, _, _ = _draw_systemic(model, block, work)
+    common = _draw_common(model, block, work)
+    factor = 1.0 + model.patterns @ uplift
+    # What each cause adds is not asked for; the common scores act all the same.
+    _draw_ranges(replace(model, causes=()), block, work, common, factor)
+    return DrawnBlock(
+        value=work.value.copy(),
+        uplift=uplift,
+        events=draw_events(model, block, work.source),
     )
 
 

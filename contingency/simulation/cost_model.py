@@ -159,7 +159,7 @@ def build_model(estimate: Estimate) -> CostModel:
         ranges=ranges,
         varying=ranges.varying,
         streams=tuple(f"range/{p.id}" for p in packages[: ranges.varying]),
-        dependence=_dependence(estimate, packages[: ranges.varying]),
+        dependence=dependence_of(estimate, packages[: ranges.varying]),
         causes=tuple(c.id for c in estimate.causes),
         systemic=tuple(s.id for s in systemic),
         systemic_place=_places(estimate.systemic, systemic),
@@ -187,8 +187,13 @@ def _places(
     return np.array([row[noun.id] for noun in in_file], dtype=np.int64)
 
 
-def _dependence(estimate: Estimate, varying: tuple[WorkPackage, ...]) -> Dependence:
-    """Return the dependence of the varying ranges (design: Gaussian copula)."""
+def dependence_of(
+    estimate: Estimate, varying: tuple[WorkPackage, ...]
+) -> Dependence:
+    """Return the dependence of the varying ranges (design: Gaussian copula).
+
+    `varying` are the packages whose ranges vary, in the order of a cost model.
+    """
     general = estimate.general_dependence or 0.0
     count = len(varying)
     if estimate.correlations:

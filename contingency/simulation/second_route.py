@@ -23,7 +23,7 @@ Quantile = Callable[[Array], Array]
 
 MOST_TRIALS = 65_536
 LEAST_TRIALS = 8_192
-DRAWS = 2_000_000
+DRAWS = 1_000_000
 """Quantiles that one run may take, so that a large estimate does not wait; ours."""
 
 
@@ -213,33 +213,39 @@ def _bounded(
     high: float,
     ends: tuple[float, float] | None,
 ) -> Quantile:
-    def law(a: float, b: float) -> Any:  # noqa: ANN401  (scipy names no such type)
+    def law(a: float, b: float) -> tuple[Any, tuple[float, ...]]:
+        """Return a distribution of scipy and its parameters."""
         width = b - a
         if shape is ShapeName.UNIFORM or likely is None:
-            return stats.uniform(a, width)
+            return stats.uniform, (a, width)
         place = (likely - a) / width
         if shape is ShapeName.TRIANGULAR:
-            return stats.triang(place, a, width)
-        return stats.beta(1 + 4 * place, 5 - 4 * place, a, width)
+            return stats.triang, (place, a, width)
+        return stats.beta, (1 + 4 * place, 5 - 4 * place, a, width)
+
+    def quantile_between(a: float, b: float) -> Quantile:
+        family, parameters = law(a, b)
+        return _quantile(family(*parameters))
 
     if ends is None:
-        return _quantile(law(low, high))
+        return quantile_between(low, high)
     if likely is None:
         step = (high - low) / (ends[1] - ends[0])
         start = low - step * ends[0]
-        return _quantile(law(start, start + step))
-    width = high - low
+        return quantile_between(start, start + step)
+    width, given = high - low, np.array([low, high])
 
-    def miss(outward: Array) -> list[float]:
-        a = min(low, likely) - width * float(np.exp(outward[0]))
-        b = max(high, likely) + width * float(np.exp(outward[1]))
-        found = law(a, b)
-        return [float(found.cdf(low) - ends[0]), float(found.cdf(high) - ends[1])]
+    def limits(outward: Array) -> tuple[float, float]:
+        """Return limits that lie outside the likely value, whatever is tried."""
+        step = width * np.exp(outward)
+        return min(low, likely) - float(step[0]), max(high, likely) + float(step[1])
+
+    def miss(outward: Array) -> Array:
+        family, parameters = law(*limits(outward))
+        return np.asarray(family.cdf(given, *parameters) - ends)
 
     solved = optimize.least_squares(miss, [-1.5, -1.5], xtol=1e-14, ftol=1e-14)
-    a = min(low, likely) - width * float(np.exp(solved.x[0]))
-    b = max(high, likely) + width * float(np.exp(solved.x[1]))
-    return _quantile(law(a, b))
+    return quantile_between(*limits(solved.x))
 
 
 def _quantile(law: Any) -> Quantile:  # noqa: ANN401  (a frozen distribution)
