@@ -187,9 +187,7 @@ def _places(
     return np.array([row[noun.id] for noun in in_file], dtype=np.int64)
 
 
-def dependence_of(
-    estimate: Estimate, varying: tuple[WorkPackage, ...]
-) -> Dependence:
+def dependence_of(estimate: Estimate, varying: tuple[WorkPackage, ...]) -> Dependence:
     """Return the dependence of the varying ranges (design: Gaussian copula).
 
     `varying` are the packages whose ranges vary, in the order of a cost model.
