@@ -80,9 +80,10 @@ def refuse_both(table: Table | None, packages: Table | None, faults: FaultList) 
 def _package(row: Row, column: str, packages: Packages | None) -> str:
     """Return the id of a package that the cell names; blank where it names none."""
     text = row.text(column, needed="the id of a package")
-    if text and packages is not None and text not in packages.ids:
+    known = packages.ids if packages else None
+    if text and known is not None and text not in known:
         found = f"packages.csv has no package {shown(text)}."
-        remedy = instead(text, packages.ids, "Write the id of a package.")
+        remedy = instead(text, known, "Write the id of a package.")
         row.refuse(column, Problem(IdUnknown, found, remedy))
     return text
 

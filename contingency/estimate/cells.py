@@ -12,7 +12,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from decimal import Decimal
 
-from contingency.estimate.fault_list import Problem, instead, listed, shown
+from contingency.estimate.fault_list import Problem, listed, nearest, shown
 from contingency.estimate.faults import (
     AmountUnclear,
     DecimalComma,
@@ -159,7 +159,9 @@ def read_share(text: str) -> Decimal | Problem:
     if not figure.is_percent:
         found = f"{shown(text)} has no percent sign."
         hint = figure.value * HUNDRED if figure.value <= 1 else figure.value
-        return Problem(ShareOutOfRange, found, f"Write {hint.normalize():f}% if so.")
+        return Problem(
+            ShareOutOfRange, found, f"Write {hint.normalize():f}%, if that is meant."
+        )
     if not 0 <= figure.value <= HUNDRED:
         found = f"{shown(text)} lies outside 0% to 100%."
         return Problem(ShareOutOfRange, found, "Correct the share.")
@@ -183,8 +185,12 @@ def read_word(text: str, words: Iterable[str]) -> str | Problem:
     words = list(words)
     if text in words:
         return text
-    remedy = instead(text, words, f"Write {listed(words)}.")
-    return Problem(WordUnknown, f"{shown(text)} is none of its words.", remedy)
+    remedy = f"Write {listed(words)}."
+    meant = nearest(text, words)
+    if meant:
+        remedy = f"Write {meant}, if that is meant; the words are "
+        remedy += f"{listed(words, 'and')}."
+    return Problem(WordUnknown, f"{shown(text)} is no word of this column.", remedy)
 
 
 def read_level(text: str) -> int | Problem:

@@ -208,7 +208,9 @@ def _after(row: Row, terms: EventTerms, ends: EndsRule) -> dict[str, Any]:
 def _missing_after(row: Row) -> list[str]:
     """Return the blank columns that the state after treatment cannot do without."""
     chance = CHANCE.get(row.cell("happens") or "once")
-    wanted = [f"after_{chance}"] if chance else []
+    # A chance under the other name is a fault of its own.
+    has_chance = any(row.cell(f"after_{column}") for column in CHANCE.values())
+    wanted = [f"after_{chance}"] if chance and not has_chance else []
     shape = row.cell("shape") or ShapeName.PERT
     if shape in list(ShapeName) and shape not in LISTED:
         needed = NEEDED[ShapeName(shape)]
@@ -226,7 +228,7 @@ def _management(
     amount = row.accept("response_cost", terms.number(cost)) if cost else None
     contract, retained = _contract(row)
     package = row.text("response_package")
-    if package and packages is not None:
+    if package:
         _check_package(row, "response_package", package, packages)
     texts = ("owner", "response", "response_owner", "cause", "clause", "held_by")
     return {
@@ -274,11 +276,11 @@ def _shares(row: Row, packages: Packages | None) -> tuple[PackageShare, ...]:
         return ()
     shares: dict[str, Decimal] = {}
     for package, text in pairs:
-        if packages is not None:
-            _check_package(row, "packages", package, packages)
+        _check_package(row, "packages", package, packages)
         if package in shares:
             found = f"The package {shown(package)} stands in the cell twice."
             row.refuse("packages", Problem(ListUnclear, found, "Give it one share."))
+            return ()
         share = row.accept("packages", read_share(text))
         if share is None:
             return ()
@@ -291,9 +293,12 @@ def _shares(row: Row, packages: Packages | None) -> tuple[PackageShare, ...]:
     return tuple(PackageShare(package=p, fraction=float(s)) for p, s in shares.items())
 
 
-def _check_package(row: Row, column: str, package: str, packages: Packages) -> None:
+def _check_package(
+    row: Row, column: str, package: str, packages: Packages | None
+) -> None:
     """Note a package that is not in the estimate."""
-    if package not in packages.ids:
+    known = packages.ids if packages else None
+    if known is not None and package not in known:
         found = f"packages.csv has no package {shown(package)}."
-        remedy = instead(package, packages.ids, "Write the id of a package.")
+        remedy = instead(package, known, "Write the id of a package.")
         row.refuse(column, Problem(IdUnknown, found, remedy))

@@ -13,7 +13,7 @@ from contingency.estimate.rows import Row
 
 COLUMNS = ("basis", "basis_kind", "given_by", "given_on")
 
-_NAMED_FILE = re.compile(r"(?<!\w)file:[ ]?([^\s,;()\"]*)")
+_NAMED_FILE = re.compile(r"(?<!\w)file:([^\s,;()\"]*)")
 
 
 def read_evidence(row: Row, folder: EstimateFolder) -> Evidence:
@@ -33,6 +33,8 @@ def carry_named_files(row: Row, folder: EstimateFolder) -> None:
     for name in named_files(row.cell("basis")):
         if not name or "/" in name or "\\" in name or name.strip(".") == "":
             found = f"The file is named {shown(name)}."
+            if not name:
+                found = "No name stands right after file:."
             remedy = "Copy the file into the estimate folder and write its name alone."
             row.refuse("basis", Problem(EvidenceName, found, remedy))
         elif not folder.has(name):

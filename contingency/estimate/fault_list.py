@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
-from difflib import get_close_matches
+from difflib import SequenceMatcher, get_close_matches
 
 from contingency.errors import Fault, UnusableEstimate
 
@@ -130,15 +130,18 @@ def listed(words: Iterable[str], last: str = "or") -> str:
 def nearest(word: str, known: Iterable[str], *, at_least: float = 0.6) -> str | None:
     """Return the known word that the user most likely meant, or None.
 
-    `at_least` is the likeness asked for, 0 to 1 (`difflib`'s ratio).
+    `at_least` is the likeness asked for, 0 to 1 (`difflib`'s ratio).  Of two words
+    that are equally like neither is the one: P900 may be P100 or P200.
     """
     by_small = {k.lower(): k for k in known}
-    close = get_close_matches(word.lower()[:100], by_small, n=1, cutoff=at_least)
-    return by_small[close[0]] if close else None
+    small = word.lower()[:100]
+    close = get_close_matches(small, by_small, n=2, cutoff=at_least)
+    ratios = [SequenceMatcher(None, candidate, small).ratio() for candidate in close]
+    is_tie = len(ratios) == 2 and ratios[0] == ratios[1]
+    return by_small[close[0]] if close and not is_tie else None
 
 
 def instead(word: str, known: Iterable[str], otherwise: str) -> str:
     """Return a remedy for an unknown word: its nearest known one, or `otherwise`."""
-    known = list(known)
     meant = nearest(word, known)
-    return f"Did you mean {meant}? {otherwise}" if meant else otherwise
+    return f"Write {meant}, if that is meant." if meant else otherwise

@@ -254,10 +254,10 @@ class EndsUnclear(Fault):
 
 
 class CellBlank(Fault):
-    """A cell that must be filled and is not."""
+    """A cell or a setting that must be filled and is not."""
 
     slug = "cell-blank"
-    law = "A row gives at least what identifies it and what it is worth."
+    law = "What docs/inputs.md marks as required is not left blank."
 
 
 class NotANumber(Fault):

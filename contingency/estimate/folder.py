@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import codecs
+import os
 import stat
 from collections.abc import Mapping
 from pathlib import Path
@@ -160,11 +161,12 @@ class EstimateFolder:
             return None
         path = self.path / name
         try:
-            problem = self._unfit(path, largest)
+            about = path.stat()
+            problem = self._unfit(path, about, largest)
             if problem is None:
                 with path.open("rb") as file:
-                    # Never more than the limit, even if the file grows meanwhile.
-                    self._read[name] = file.read(largest)
+                    # No more than was looked up, even if the file grows meanwhile.
+                    self._read[name] = file.read(about.st_size)
                 return self._read[name]
         except (OSError, ValueError) as error:
             found = f"The file {shown(name)} cannot be read ({_reason(error)})."
@@ -173,9 +175,8 @@ class EstimateFolder:
         self.faults.add(place, problem)
         return None
 
-    def _unfit(self, path: Path, largest: int) -> Problem | None:
+    def _unfit(self, path: Path, about: os.stat_result, largest: int) -> Problem | None:
         """Return what keeps a file from being read, if anything."""
-        about = path.stat()
         remedy = f"Put the file {path.name} itself in the folder."
         if stat.S_ISDIR(about.st_mode):
             return Problem(NotAFile, f"{shown(path.name)} is a folder.", remedy)

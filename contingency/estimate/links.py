@@ -58,6 +58,7 @@ def _check_requires(
     table: Table, rows: dict[str, Row], groups: dict[str, list[str]]
 ) -> None:
     """Note conditions that do not exist, cannot come true or lead in a circle."""
+    known = table.known_ids
     in_known_circle: set[str] = set()
     for event_id, row in rows.items():
         parent = row.cell("requires")
@@ -67,9 +68,9 @@ def _check_requires(
             found = f"The event requires itself, {shown(parent)}."
             remedy = "Name the event that must have happened before."
             row.refuse("requires", Problem(SelfReference, found, remedy))
-        elif parent not in table.ids:
+        elif known is not None and parent not in known:
             found = f"events.csv has no event {shown(parent)}."
-            remedy = instead(parent, table.ids, "Write the id of one event.")
+            remedy = instead(parent, known, "Write the id of one event.")
             row.refuse("requires", Problem(IdUnknown, found, remedy))
         else:
             _check_ancestors(event_id, rows, groups, in_known_circle)
@@ -142,19 +143,22 @@ def _groups(table: Table, rows: dict[str, Row]) -> dict[str, list[str]]:
 
 def _excluded(row: Row, table: Table) -> list[str]:
     """Return the events that the cell `excludes` names, and note wrong ones."""
-    known = []
+    if not row.cell("excludes"):
+        return []
+    known = table.known_ids
+    named = []
     for other in row.entries("excludes") or []:
         if other == row.cell("id"):
             found = f"The event excludes itself, {shown(other)}."
             remedy = "Name the other events that cannot happen together with it."
             row.refuse("excludes", Problem(SelfReference, found, remedy))
-        elif other not in table.ids:
+        elif known is not None and other not in known:
             found = f"events.csv has no event {shown(other)}."
-            remedy = instead(other, table.ids, "Write ids of events.")
+            remedy = instead(other, known, "Write ids of events.")
             row.refuse("excludes", Problem(IdUnknown, found, remedy))
         else:
-            known.append(other)
-    return known
+            named.append(other)
+    return named
 
 
 def _check_group(

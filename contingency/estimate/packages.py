@@ -75,9 +75,10 @@ class Packages:
 
     read: tuple[WorkPackage, ...]
     """The packages without a fault, in file order."""
-    ids: frozenset[str]
-    """Ids of all rows, those included that have faults."""
+    ids: frozenset[str] | None
+    """Ids of all rows, those included that have faults; None where some are hidden."""
     groups: frozenset[str]
+    """Headings of all rows."""
     base: Decimal | None
     """Sum of the bases; None where one of them could not be read."""
 
@@ -108,7 +109,7 @@ def read_packages(
             read.append(package)
     return Packages(
         read=tuple(read),
-        ids=frozenset(table.ids),
+        ids=table.known_ids if bases else None,
         groups=frozenset(row.cell("group") for row in table.rows) - {""},
         base=_sum_of_bases(table, bases, folder.faults),
     )
@@ -164,6 +165,8 @@ def _sum_of_bases(
     """Return the base of the project; None where it is unreadable or nought."""
     place = Place(table.layout.file)
     readable = [base for base in bases if base is not None]
+    if not bases and not table.is_whole:
+        return None
     if not bases:
         found = "The table has no rows below its header row."
         faults.add(place, Problem(NoPackages, found, "Add the work packages."))
@@ -191,7 +194,7 @@ def _money(row: Row, column: str, *, needed: str = "") -> Decimal | None:
         return None
     if figure.value < 0:
         found = f"{column} {worded(float(figure.value))} is negative."
-        remedy = "Write income as an opportunity in events.csv, or correct the sign."
+        remedy = "Correct the sign; a possible income is an opportunity in events.csv."
         row.refuse(column, Problem(AmountNegative, found, remedy))
         return None
     return figure.value
@@ -219,9 +222,10 @@ def _loads(row: Row, rules: PackageRules) -> tuple[Load, ...]:
     loads: dict[str, Decimal] = {}
     for cause, cell in pairs or ():
         if causes is not None and cause not in causes:
-            otherwise = "Add the cause to causes.csv."
             found = f"causes.csv has no cause {shown(cause)}."
-            remedy = instead(cause, causes, otherwise)
+            if not causes:
+                found = f"There is no causes.csv with the cause {shown(cause)}."
+            remedy = instead(cause, causes, "Add the cause to causes.csv.")
             row.refuse("causes", Problem(IdUnknown, found, remedy))
         if cause in loads:
             found = f"The cause {shown(cause)} stands in the cell twice."

@@ -238,7 +238,7 @@ def _is_complete(row: Row, shape: ShapeName, terms: Terms, prefix: str) -> bool:
     if missing:
         found = f"A {shape} range lacks {listed(missing, 'and')}."
         reads = listed([c for c in needed if c != "outcomes"] or ["outcomes"], "and")
-        remedy = f"Fill it in: {shape} reads {reads}"
+        remedy = f"Fill in {listed(missing, 'and')}: {shape} reads {reads}"
         if not prefix and len(missing) > 1:
             remedy += "; or write fixed under shape if the figure is certain"
         row.refuse(missing[0], Problem(RangeIncomplete, found, f"{remedy}."))
@@ -305,7 +305,8 @@ def _take_default(
         return True
     if terms.default_likely is None:
         return False
-    stand_in = Figure(terms.default_likely, is_percent=False, text="base")
+    base = f"base {worded(float(terms.default_likely))}"
+    stand_in = Figure(terms.default_likely, is_percent=False, text=base)
     number = terms.number(stand_in)
     if isinstance(number, Problem):
         found = f"likely is blank, so the base stands for it: {number.found}"

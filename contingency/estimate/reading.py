@@ -145,9 +145,9 @@ def _packages(
     table, causes = tables["packages.csv"], tables["causes.csv"]
     if table is None:
         return None
-    known: frozenset[str] | None = frozenset(causes.ids) if causes else frozenset()
-    if causes is None and folder.has("causes.csv"):
-        known = None
+    known: frozenset[str] | None = frozenset()
+    if folder.has("causes.csv"):
+        known = causes.known_ids if causes else None
     dependence = settings.general_dependence if settings else None
     rules = PackageRules(ends=ends, causes=known, general_dependence=dependence or 0.0)
     return packages_csv.read_packages(table, folder, rules)

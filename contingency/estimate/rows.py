@@ -102,8 +102,9 @@ class Row:
         value = self.number(column)
         if value is not None and value < 0:
             found = f"{shown(self.cell(column))} is negative."
-            remedy = "Write a number that is not negative."
-            self.refuse(column, Problem(AmountNegative, found, remedy))
+            rule = "A number of occurrences is not negative."
+            problem = Problem(AmountNegative, found, "Correct the number.", rule)
+            self.refuse(column, problem)
             return None
         return None if value is None else float(value)
 

@@ -10,7 +10,15 @@ from dataclasses import dataclass
 from typing import Any
 
 from contingency.estimate.cells import read_level
-from contingency.estimate.fault_list import FaultList, Place, Problem, instead, shown
+from contingency.estimate.fault_list import (
+    FaultList,
+    Place,
+    Problem,
+    instead,
+    listed,
+    nearest,
+    shown,
+)
 from contingency.estimate.faults import (
     CellBlank,
     ControlCharacter,
@@ -58,6 +66,7 @@ class Section:
         `elsewhere` says under which heading a key of another section belongs.
         """
         known = list(known)
+        misspelt: set[str | None] = set()
         for key in self.values:
             if key in known:
                 continue
@@ -65,11 +74,12 @@ class Section:
             if key in elsewhere:
                 remedy = f"Move it to {elsewhere[key]}."
             else:
-                otherwise = f"Its keys are {', '.join(known)}."
+                otherwise = f"Its keys are {listed(known, 'and')}."
                 remedy = instead(key, known, otherwise)
+                misspelt.add(nearest(key, known))
             self.refuse(key, Problem(KeyUnknown, found, remedy))
         for key in required:
-            if key not in self.values:
+            if key not in self.values and key not in misspelt:
                 found = f"The key {key} is missing."
                 problem = Problem(KeyMissing, found, f"Add a line {key} = ...")
                 self.refuse(key, problem)
@@ -80,7 +90,7 @@ class Section:
         if value is None:
             return ""
         if not isinstance(value, str):
-            self._refuse_kind(key, "a text", "Put it in quotes.")
+            self.refuse_kind(key, "a text", "Put it in quotes.")
             return ""
         match = _UNPRINTABLE.search(value)
         if match:
@@ -89,28 +99,17 @@ class Section:
             self.refuse(key, problem)
         text = value.strip()
         if needed and not text:
-            found = f"The text {key} is blank."
+            found = f"The text {key} is blank." if key else "The text is blank."
             self.refuse(key, Problem(CellBlank, found, "Write it."))
         return text
 
     def texts(self, key: str) -> tuple[str, ...]:
         """Return a list of texts."""
-        values = self._list(key)
-        for value in values:
-            if not isinstance(value, str):
-                self._refuse_kind(key, "a list of texts", "Put each in quotes.")
-                return ()
-        inside = [
-            Section(
-                name=f"{self.name} {key} {i + 1}",
-                values={"": value},
-                path=(*self.path, key, i),
-                lines=self.lines,
-                faults=self.faults,
-            )
-            for i, value in enumerate(values)
+        entries = [
+            self._section(f"{self.name} {key} {i + 1}", {"": value}, key, i)
+            for i, value in enumerate(self._list(key))
         ]
-        return tuple(section.text("", needed=True) for section in inside)
+        return tuple(entry.text("", needed=True) for entry in entries)
 
     def day(self, key: str) -> dt.date | None:
         """Return a day."""
@@ -120,7 +119,7 @@ class Section:
         if isinstance(value, dt.date) and not isinstance(value, dt.datetime):
             return value
         remedy = "Write a day without quotes and time, as in 2026-03-31."
-        self._refuse_kind(key, "a day", remedy)
+        self.refuse_kind(key, "a day", remedy)
         return None
 
     def number(self, key: str) -> float | None:
@@ -130,7 +129,7 @@ class Section:
             return None
         if isinstance(value, bool) or not isinstance(value, int | float):
             remedy = "Write it without quotes, with a decimal point."
-            self._refuse_kind(key, "a number", remedy)
+            self.refuse_kind(key, "a number", remedy)
             return None
         try:
             number = float(value)
@@ -157,7 +156,10 @@ class Section:
         rule = f"{key} is {least}"
         rule += f" and at most {high:g}." if math.isfinite(high) else "."
         problem = Problem(
-            SettingOutOfRange, f"{key} is {value:.15g}.", f"Correct {key}.", rule
+            SettingOutOfRange,
+            f"{key} is {value:.15g}.",
+            f"Write a {key} within these bounds.",
+            rule,
         )
         self.refuse(key, problem)
         return None
@@ -169,13 +171,16 @@ class Section:
             return None
         if isinstance(value, bool) or not isinstance(value, int):
             remedy = "Write it without quotes, decimal point and exponent."
-            self._refuse_kind(key, "a whole number", remedy)
+            self.refuse_kind(key, "a whole number", remedy)
             return None
         if low <= value <= high:
             return value
         rule = f"{key} is a whole number from {low:,} to {high:,}."
         problem = Problem(
-            SettingOutOfRange, f"{key} is {_digits(value)}.", f"Correct {key}.", rule
+            SettingOutOfRange,
+            f"{key} is {_digits(value)}.",
+            f"Write a {key} within these bounds.",
+            rule,
         )
         self.refuse(key, problem)
         return None
@@ -200,39 +205,44 @@ class Section:
             return None
         if not isinstance(value, dict):
             remedy = f"Write {key} = {{ ... }} with its own keys."
-            self._refuse_kind(key, "a table of keys", remedy)
+            self.refuse_kind(key, "a table of keys", remedy)
             return None
         name = f"{self.name} {key}" if self.path else f"[{key}]"
-        return self._section(name, value, (*self.path, key))
+        return self._section(name, value, key)
 
     def each(self, key: str) -> list[Section]:
         """Return the tables of a list within this one."""
         sections = []
         for i, value in enumerate(self._list(key)):
-            if not isinstance(value, dict):
-                remedy = "Write each entry as { ... } with its own keys."
-                self._refuse_kind(key, "a list of tables", remedy)
-                return []
             name = f"{self.name} {key} {i + 1}" if self.path else f"[[{key}]] {i + 1}"
-            sections.append(self._section(name, value, (*self.path, key, i)))
+            if isinstance(value, dict):
+                sections.append(self._section(name, value, key, i))
+                continue
+            entry = self._section(name, {"": value}, key, i)
+            remedy = "Write it as { ... } with its own keys."
+            entry.refuse_kind("", "a table of keys", remedy)
         return sections
 
     def _list(self, key: str) -> list[Any]:
         value = self.values.get(key, [])
         if isinstance(value, list):
             return value
-        self._refuse_kind(key, "a list", "Put it in square brackets.")
+        self.refuse_kind(key, "a list", "Put it in square brackets.")
         return []
 
-    def _section(self, name: str, values: Mapping[str, Any], path: KeyPath) -> Section:
+    def _section(
+        self, name: str, values: Mapping[str, Any], *steps: str | int
+    ) -> Section:
+        """Return a section within this one."""
+        path = (*self.path, *steps)
         return Section(
             name=name, values=values, path=path, lines=self.lines, faults=self.faults
         )
 
-    def _refuse_kind(self, key: str, expected: str, remedy: str) -> None:
+    def refuse_kind(self, key: str, expected: str, remedy: str) -> None:
         """Note a value of another kind than the one expected."""
         value = self.values[key]
-        found = f"{key} is {_kind(value)}, not {expected}."
+        found = f"{key or 'The entry'} is {_kind(value)}, not {expected}."
         self.refuse(key, Problem(KindWrong, found, remedy))
 
 

@@ -12,7 +12,14 @@ from typing import Any
 
 from contingency.estimate.cells import read_ends
 from contingency.estimate.currencies import CURRENCIES
-from contingency.estimate.fault_list import FaultList, Place, Problem, instead, shown
+from contingency.estimate.fault_list import (
+    FaultList,
+    Place,
+    Problem,
+    instead,
+    listed,
+    shown,
+)
 from contingency.estimate.faults import (
     CurrencyUnknown,
     IdTwice,
@@ -164,7 +171,7 @@ def _check_headings(root: Section) -> None:
         if key not in known:
             found = f"estimate.toml has no heading or key {shown(key)}."
             homes = _homes()
-            otherwise = f"The headings are {', '.join(known)}."
+            otherwise = f"The headings are {listed(known, 'and')}."
             remedy = instead(key, known, otherwise)
             if key in homes:
                 remedy = f"Move it to {homes[key]}."

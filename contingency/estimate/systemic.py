@@ -69,19 +69,21 @@ def read_systemic(
 
 def _acts_on(row: Row, words: list[str], packages: Packages | None) -> tuple[str, ...]:
     """Return the ids of the packages that the words of applies_to stand for."""
-    if packages is None:
+    if packages is None or packages.ids is None:
         return ()
     if words == ["all"]:
         return tuple(package.id for package in packages.read)
     for word in dict.fromkeys(words):
-        problem = _problem_with(word, words, packages)
+        problem = _problem_with(word, words, packages.groups, packages.ids)
         if problem is not None:
             row.refuse("applies_to", problem)
     named = set(words)
     return tuple(p.id for p in packages.read if p.id in named or p.group in named)
 
 
-def _problem_with(word: str, words: list[str], packages: Packages) -> Problem | None:
+def _problem_with(
+    word: str, words: list[str], groups: frozenset[str], ids: frozenset[str]
+) -> Problem | None:
     """Return what is wrong with one word of applies_to."""
     if word == "all":
         remedy = "Write all alone, or the groups and packages that are meant."
@@ -89,13 +91,13 @@ def _problem_with(word: str, words: list[str], packages: Packages) -> Problem | 
     if words.count(word) > 1:
         found = f"{shown(word)} stands in the cell twice."
         return Problem(AppliesToUnclear, found, "Name it once.")
-    is_group, is_package = word in packages.groups, word in packages.ids
+    is_group, is_package = word in groups, word in ids
     if is_group and is_package:
         found = f"{shown(word)} is a group and the id of a package."
         return Problem(AppliesToUnclear, found, "Rename the group.")
     if not is_group and not is_package:
         found = f"No group or package is called {shown(word)}."
         otherwise = "Write all, or groups and package ids of packages.csv."
-        remedy = instead(word, packages.groups | packages.ids, otherwise)
+        remedy = instead(word, groups | ids, otherwise)
         return Problem(IdUnknown, found, remedy)
     return None

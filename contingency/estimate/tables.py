@@ -18,7 +18,6 @@ from contingency.estimate.fault_list import (
     FaultList,
     Place,
     Problem,
-    instead,
     listed,
     nearest,
     shown,
@@ -69,6 +68,8 @@ class Table:
     rows: list[Row] = field(default_factory=list)
     ragged: list[Row] = field(default_factory=list)
     """Rows with too few or too many cells, for their ids only."""
+    is_whole: bool = True
+    """Whether every row has been found, so that an id not in it does not exist."""
     under_no_name: dict[int, tuple[Row, str]] = field(default_factory=dict)
     """The first cell that is filled under each blank name."""
 
@@ -76,6 +77,12 @@ class Table:
     def ids(self) -> set[str]:
         """The ids of all rows, those included that have faults."""
         return {row.cell("id") for row in (*self.rows, *self.ragged)} - {""}
+
+    @property
+    def known_ids(self) -> frozenset[str] | None:
+        """The ids that other rows may name; None where some may be hidden."""
+        hidden = not self.is_whole or "id" not in self.columns
+        return None if hidden else frozenset(self.ids)
 
 
 def read_table(
@@ -86,15 +93,16 @@ def read_table(
     if text is None:
         return None
     separator = _separator(text)
-    if separator is None:
-        found = "The header row has neither commas nor semicolons."
-        remedy = "Save the table as CSV with commas or semicolons."
-        faults.add(Place(layout.file), Problem(SeparatorUnknown, found, remedy))
-        return None
     records = _Records(text, separator, layout.file, faults)
     table: Table | None = None
     for line, record in records:
         if table is None:
+            if len(record) == 1 and record[0] not in layout.columns:
+                found = f"The header row is one cell, {shown(record[0])}."
+                remedy = "Save the table as CSV with commas or semicolons."
+                problem = Problem(SeparatorUnknown, found, remedy)
+                faults.add(Place(layout.file, line), problem)
+                return None
             table = _with_header(line, record, layout, separator, faults)
         else:
             _add_row(table, line, record, separator, faults)
@@ -105,6 +113,7 @@ def read_table(
             faults.add(Place(layout.file), Problem(FileEmpty, found, remedy))
         return None
     _check_unnamed(table)
+    table.is_whole = not records.refused
     return table
 
 
@@ -127,6 +136,7 @@ def _add_row(
         row.refuse("", _ragged(len(record), width, separator))
         return
     table.rows.append(row)
+    _check_characters(row)
     for position in table.unnamed:
         if record[position]:
             table.under_no_name.setdefault(position, (row, record[position]))
@@ -160,7 +170,6 @@ class _Records:
                 return
             cells = [_LINE_END.sub("\n", cell).strip() for cell in record]
             if any(cells) and not _is_quoted_comment(cells):
-                self._check_characters(cells)
                 yield self._start, cells
 
     def _lines(self) -> Iterator[str]:
@@ -176,26 +185,16 @@ class _Records:
                 self._between_records = False
             yield line
 
-    def _check_characters(self, cells: list[str]) -> None:
-        """Note the first character of a record that cannot be printed."""
-        match = _UNPRINTABLE.search("\n".join(cells))
-        if match:
-            found = f"The character U+{ord(match[0]):04X} stands in a cell."
-            remedy = "Delete it; retype the cell if the character does not show."
-            self._refuse(Problem(ControlCharacter, found, remedy))
-
     def _refuse(self, problem: Problem) -> None:
         """Note a problem of the record at hand."""
         self.refused = True
         self._faults.add(Place(self._file, self._start), problem)
 
 
-def _separator(text: str) -> str | None:
-    """Return the separator of the header row; None if it has another one."""
+def _separator(text: str) -> str:
+    """Return the separator of the header row."""
     for line in io.StringIO(text, newline=""):
         if line.strip() and not line.startswith(("#", '"# ')):
-            if "\t" in line.strip() and "," not in line and ";" not in line:
-                return None
             return ";" if line.count(";") > line.count(",") else ","
     return ","
 
@@ -211,12 +210,13 @@ def _with_header(
         place = Place(layout.file, line, part, order)
         meant = name
         if name and name not in layout.columns:
-            otherwise = f"The columns are {listed(layout.columns, 'and')}."
-            found = f"The table has no column {shown(name)}."
-            remedy = instead(name, layout.columns, otherwise)
-            faults.add(place, Problem(ColumnUnknown, found, remedy))
             # Its cells are still checked as those of the column that was meant.
             meant = nearest(name, set(layout.columns) - set(cells)) or name
+            found = f"The table has no column {shown(name)}."
+            remedy = f"Rename it to {meant}, if that is meant."
+            if meant == name:
+                remedy = f"The columns are {listed(layout.columns, 'and')}."
+            faults.add(place, Problem(ColumnUnknown, found, remedy))
         elif name and name in columns:
             found = f"The column {name} stands {counts[name]} times in the header row."
             remedy = "Remove or rename all but one of them."
@@ -235,6 +235,18 @@ def _with_header(
         unnamed=tuple(i for i, name in enumerate(cells) if not name),
         semicolons=separator == ";",
     )
+
+
+def _check_characters(row: Row) -> None:
+    """Note the first character of each cell that cannot be printed."""
+    if not _UNPRINTABLE.search("".join(row.cells.values())):
+        return
+    for column, cell in row.cells.items():
+        match = _UNPRINTABLE.search(cell)
+        if match:
+            found = f"The character U+{ord(match[0]):04X} stands in the cell."
+            remedy = "Delete it; retype the cell if the character does not show."
+            row.refuse(column, Problem(ControlCharacter, found, remedy))
 
 
 def _check_unnamed(table: Table) -> None:
