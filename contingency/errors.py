@@ -313,9 +313,3 @@ class AttachmentNameTaken(ReportError):
     """Two files would be attached to a report under one name."""
 
     slug = "attachment-name-taken"
-
-
-class CrossCheckFailed(AnalysisError):
-    """The engine and its cross-checks disagree, so no report is written."""
-
-    slug = "cross-check-failed"
