@@ -168,7 +168,7 @@ def _print_findings(
     skipped = sum(outcome.outcome == "not-applicable" for outcome in outcomes)
     print(
         f"  {len(outcomes)} checks: {passed} passed, {skipped} not applicable here, "
-        f"{len(findings)} findings"
+        f"{len(findings)} finding{'' if len(findings) == 1 else 's'}"
     )
     for finding in findings:
         answered = "answered" if finding.answer else ""
