@@ -64,13 +64,14 @@ def decimals(step: float) -> int:
 
 
 def table_unit(step: float) -> MoneyUnit:
-    """Return the largest unit that shows amounts rounded to `step` without decimals.
+    """Return the unit that shows amounts rounded to `step` with the fewest figures.
 
-    >>> table_unit(1000).word, table_unit(50_000).word, table_unit(100).word
-    ('thousand', 'thousand', '')
+    >>> [table_unit(step).word for step in (100, 1000, 50_000, 100_000, 1e6)]
+    ['', 'thousand', 'thousand', 'million', 'million']
     """
-    if step >= 1000 and step % 1000 == 0:
-        return MoneyUnit(size=1000.0, digits=0, word="thousand")
+    for size, word, least in ((1e6, "million", 1e5), (1e3, "thousand", 1e3)):
+        if step >= least and decimals(step / size) <= 1:
+            return MoneyUnit(size=size, digits=decimals(step / size), word=word)
     return MoneyUnit(size=1.0, digits=decimals(step), word="")
 
 
@@ -135,6 +136,34 @@ def in_unit(amount: float, unit: MoneyUnit) -> str:
     '21,384'
     """
     return fixed(amount / unit.size, unit.digits)
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class Amounts:
+    """How one report writes its amounts."""
+
+    currency: str
+    step: float
+    """Printed amounts are multiples of this."""
+
+    @property
+    def unit(self) -> MoneyUnit:
+        """The unit of the tables."""
+        return table_unit(self.step)
+
+    @property
+    def caption(self) -> str:
+        """The unit of the tables as captions name it: EUR thousand."""
+        return self.unit.caption(self.currency)
+
+    def cell(self, amount: float) -> str:
+        """Return an amount as a table shows it."""
+        return in_unit(amount, self.unit)
+
+    def full(self, amount: float) -> str:
+        """Return an amount as a sentence shows it: EUR 21,384,000."""
+        rounded = round(amount / self.step) * self.step
+        return currency_amount(self.currency, rounded, step=self.step)
 
 
 def percent(fraction: float, digits: int = 0) -> str:
@@ -218,10 +247,10 @@ def count(number: int) -> str:
 
 
 def plural(number: int, one: str, many: str = "") -> str:
-    """Return a number with its noun.
+    r"""Return a number with its noun.
 
     >>> plural(1, "package").replace(SPACE, " "), plural(0, "entry", "entries")
-    ('1 package', '0\\xa0entries')
+    ('1 package', '0\xa0entries')
     """
     return f"{count(number)}{SPACE}{one if number == 1 else many or one + 's'}"
 

@@ -1,0 +1,294 @@
+"""Title page and answer page: who asks for what, and how sure it is."""
+
+from __future__ import annotations
+
+import re
+from dataclasses import dataclass
+
+from contingency.assurance.findings import Finding
+from contingency.estimate.nouns import SignOffLine
+from contingency.report.charts import KINDS, Chart
+from contingency.report.wording import (
+    NOTHING,
+    SPACE,
+    Amounts,
+    chance,
+    clipped,
+    count,
+    date,
+    grouped_fingerprint,
+    percent,
+    plural,
+    sentence,
+    short_fingerprint,
+)
+from contingency.setting.drivers import Driver
+from contingency.setting.printed import PrintedFigures
+from contingency.study import Study
+
+REQUIRED_ROLES = ("prepared", "checked", "approved")
+"""Roles that have a line even if the estimate does not name them."""
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class Fact:
+    """One line of the control data."""
+
+    name: str
+    words: str
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class SignOffRow:
+    """One line of the sign-off block with its empty field for a seal."""
+
+    role: str
+    name: str
+    position: str
+    field: str
+    """Name of the signature field in the PDF."""
+    field_title: str
+    """What the field is, for readers who hear the form."""
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class TitlePage:
+    """What the title page shows."""
+
+    owner: str
+    project: str
+    revision: str
+    gate: str
+    status: str
+    facts: tuple[Fact, ...]
+    fingerprint: str
+    sign_offs: tuple[SignOffRow, ...]
+    running_title: str
+    """Of the page heads."""
+    running_reference: str
+    """Of the page feet: revision, status and the short fingerprint."""
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class LevelRow:
+    """One funded level."""
+
+    name: str
+    purpose: str
+    holder: str
+    contingency: str
+    total: str
+    above_previous: str
+    percent_of_base: str
+    interval: str
+    """95 % interval of the total."""
+    is_target: bool
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class TopDriver:
+    """One of the five largest drivers."""
+
+    name: str
+    kind: str
+    share: str
+    """Share of variance."""
+    effect: str
+    """Fall of the target without it."""
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class AnswerCaution:
+    """One of the three cautions that the answer carries."""
+
+    mark: str
+    """Severity, or `Stated` for one that the estimate states."""
+    words: str
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class AnswerPage:
+    """The answer, on one page."""
+
+    contingency: str
+    request: str
+    base: str
+    level: str
+    chance_words: str
+    """80 %."""
+    set_by: str
+    reason: str
+    percent_of_base: str
+    base_is_enough: str
+    middle: str
+    """P10 to P90 of the total."""
+    interval: str
+    """95 % interval of the target's total."""
+    mean: str
+    chart: str
+    chart_alt: str
+    levels: tuple[LevelRow, ...]
+    target_is_listed: bool
+    unit: str
+    drivers: tuple[TopDriver, ...]
+    cautions: tuple[AnswerCaution, ...]
+    attention: str
+    """How many findings need attention, in words."""
+
+
+def title_page(study: Study, *, draft: bool, issued_on: str, tool: str) -> TitlePage:
+    """Return the title page; `issued_on` is the day of the report in words."""
+    estimate = study.estimate
+    status = "Draft for review" if draft else "Issued"
+    facts = [
+        ("Revision", estimate.revision),
+        ("Gate", estimate.gate or NOTHING),
+        ("Estimate class", _class_words(estimate.estimate_class)),
+        ("Status", status),
+        ("Data date", date(estimate.data_date)),
+        ("Price date", date(estimate.price_date)),
+        ("Currency", estimate.currency),
+        ("Level asked for", study.target.name),
+        ("Previous revision", estimate.previous or NOTHING),
+        ("Date of this report", issued_on),
+        ("Tool", tool),
+        ("Trials and seed", f"{count(study.simulation.trials)}; {estimate.run.seed}"),
+    ]
+    return TitlePage(
+        owner=estimate.owner,
+        project=estimate.project,
+        revision=estimate.revision,
+        gate=estimate.gate,
+        status=status,
+        facts=tuple(Fact(name=name, words=words) for name, words in facts),
+        fingerprint=grouped_fingerprint(estimate.fingerprint),
+        sign_offs=sign_off_rows(estimate.sign_offs),
+        running_title=clipped(estimate.project, 70),
+        running_reference=f"Revision {clipped(estimate.revision, 24)}  ·  {status}  ·  "
+        f"Inputs {short_fingerprint(estimate.fingerprint)}",
+    )
+
+
+def _class_words(estimate_class: int | None) -> str:
+    return NOTHING if estimate_class is None else f"{estimate_class} of 5 to 1"
+
+
+def sign_off_rows(lines: tuple[SignOffLine, ...]) -> tuple[SignOffRow, ...]:
+    """Return the sign-off block; each line has a field of its own for a seal."""
+    named = {line.role for line in lines}
+    every = [
+        *lines,
+        *(SignOffLine(role=role) for role in REQUIRED_ROLES if role not in named),
+    ]
+    taken: dict[str, int] = {}
+    rows = []
+    for line in every:
+        stem = "sig_" + re.sub(r"[^a-z0-9]+", "_", line.role.lower()).strip("_")
+        taken[stem] = taken.get(stem, 0) + 1
+        rows.append(
+            SignOffRow(
+                role=line.role[:1].upper() + line.role[1:],
+                name=line.name or NOTHING,
+                position=line.position,
+                field=stem if taken[stem] == 1 else f"{stem}_{taken[stem]}",
+                field_title=f"Signature field: {line.role}, "
+                f"{line.name or 'no name given'}",
+            )
+        )
+    return tuple(rows)
+
+
+def level_rows(
+    study: Study, printed: PrintedFigures, amounts: Amounts
+) -> tuple[LevelRow, ...]:
+    """Return the funded levels in the order of the estimate."""
+    return tuple(
+        LevelRow(
+            name=lv.name,
+            purpose=lv.purpose or NOTHING,
+            holder=lv.holder or NOTHING,
+            contingency=amounts.cell(row.contingency),
+            total=amounts.cell(row.total),
+            above_previous=amounts.cell(row.above_previous),
+            percent_of_base=percent(lv.percent_of_base / 100, 1),
+            interval=f"{amounts.cell(lv.low)} to {amounts.cell(lv.high)}",
+            is_target=lv.percent == study.target.percent,
+        )
+        for lv, row in zip(study.levels, printed.levels, strict=True)
+    )
+
+
+def answer_page(
+    study: Study, printed: PrintedFigures, amounts: Amounts, chart: Chart
+) -> AnswerPage:
+    """Return the answer; long texts are cut so that it stays on one page."""
+    target, rule = study.target, study.estimate.contingency
+    p10, p90 = study.percentiles[9], study.percentiles[89]
+    inputs = [d for d in study.drivers if d.kind != "cause"]
+    return AnswerPage(
+        contingency=amounts.full(printed.total.contingency),
+        request=amounts.full(printed.request),
+        base=amounts.full(printed.total.base),
+        level=target.name,
+        chance_words=f"{target.percent}{SPACE}%",
+        set_by=clipped(rule.set_by, 150) or "No authority is recorded",
+        reason=sentence(clipped(rule.reason, 220)),
+        percent_of_base=percent(target.percent_of_base / 100, 1),
+        base_is_enough=chance(study.chance_base_is_enough),
+        middle=f"{amounts.cell(p10)} to {amounts.cell(p90)}",
+        interval=f"{amounts.cell(target.low)} to {amounts.cell(target.high)}",
+        mean=amounts.cell(printed.mean),
+        chart=chart.name,
+        chart_alt=chart.alt,
+        levels=level_rows(study, printed, amounts)[:6],
+        target_is_listed=any(lv.percent == target.percent for lv in study.levels),
+        unit=amounts.caption,
+        drivers=tuple(_top_driver(driver, amounts) for driver in inputs[:5]),
+        cautions=_worst_cautions(study),
+        attention=_attention(study.findings),
+    )
+
+
+def _top_driver(driver: Driver, amounts: Amounts) -> TopDriver:
+    return TopDriver(
+        name=f"{driver.id}{SPACE}{SPACE}{clipped(driver.name, 46)}",
+        kind=KINDS[driver.kind],
+        share=percent(driver.variance_share),
+        effect=amounts.cell(driver.removal_effect),
+    )
+
+
+def _worst_cautions(study: Study) -> tuple[AnswerCaution, ...]:
+    """Return three: findings by weight, open before answered, then those stated."""
+    weight = {"stop": 0, "major": 1, "caution": 2, "note": 9}
+    order = sorted(
+        (finding for finding in study.findings if finding.severity != "note"),
+        key=lambda f: (weight[f.severity], f.is_answered),
+    )
+    found = [
+        AnswerCaution(
+            mark=finding.severity.capitalize()
+            + (", answered" if finding.is_answered else ""),
+            words=clipped(finding.message, 210),
+        )
+        for finding in order
+    ]
+    found += [
+        AnswerCaution(mark="Stated", words=clipped(words, 210))
+        for words in study.estimate.statements.cautions
+    ]
+    return tuple(found[:3])
+
+
+def _attention(findings: tuple[Finding, ...]) -> str:
+    """Say how many findings stand in the way of a sign-off."""
+    stops = sum(finding.severity == "stop" for finding in findings)
+    majors = sum(
+        finding.severity == "major" and not finding.is_answered for finding in findings
+    )
+    if not stops and not majors:
+        return "No stop and no unanswered major finding stands."
+    parts = [plural(stops, "stop")] * bool(stops)
+    parts += [plural(majors, "unanswered major finding")] * bool(majors)
+    verb = "stands" if stops + majors == 1 else "stand"
+    return f"{' and '.join(parts)} {verb} against this estimate."
