@@ -251,12 +251,9 @@ def _shifted_lognormal(
 def _root(miss: Callable[[float], float], first: float, last: float) -> float:
     """Return where `miss` is zero between `first` and `last`, to the last digits.
 
-    Where the likely value is low or high itself, an end is the root, and rounding may
-    leave both ends with one sign.
+    Where the likely value is low or high itself, an end is the root, and `miss` is
+    zero there exactly.
     """
-    at_first, at_last = miss(first), miss(last)
-    if at_first * at_last >= 0.0:
-        return first if abs(at_first) < abs(at_last) else last
     return float(brentq(miss, first, last, xtol=1e-16, rtol=4.0 * _EPSILON))
 
 

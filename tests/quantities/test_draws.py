@@ -81,7 +81,7 @@ def test_plain_numbers_give_the_same_scores(name):
     """The whole way from a name to normal scores, written again from the method."""
     ours = scores(strata(Source(7), [name], 0))[0]
 
-    assert ours == pytest.approx(plain_scores(7, name, 0), abs=3e-8)
+    assert ours == pytest.approx(plain_scores(7, name, 0), abs=2e-7)
 
 
 def test_the_first_draws_are_those_of_the_golden_file():
@@ -130,13 +130,13 @@ def test_every_stratum_holds_one_draw():
 
 
 def test_scores_are_the_inverse_normal_of_the_uniforms():
-    """The parabolas stay within 3e-8 of the inverse normal itself."""
+    """The parabolas stay within 2e-7 of the inverse normal itself."""
     cells = strata(Source(3), [f"x{i}" for i in range(50)], 0)
     exact = np.empty((50, BLOCK))
     for row, u in enumerate(uniforms(cells)):
         exact[row][cells.trial[row]] = ndtri(u)
 
-    assert scores(cells) == pytest.approx(exact, abs=3e-8)
+    assert scores(cells) == pytest.approx(exact, abs=2e-7)
 
 
 def test_the_place_within_the_outermost_stratum_is_uniform():

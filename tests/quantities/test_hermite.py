@@ -151,6 +151,20 @@ def test_the_diagonal_is_the_exact_variance():
     assert found == pytest.approx(found.T)
 
 
+def test_the_bound_is_close_to_what_is_left_out():
+    """A series that falls quickly: nearly all of its rest is in the next term."""
+    s, r = 0.2, 0.5
+    shape = Lognormal(median=1.0, scale=1.0, log_spread=s)
+    correlation, variances = [[1.0, r], [r, 1.0]], [shape.variance] * 2
+    series = coefficients([shape, shape], order=3)
+
+    left_out = np.exp(s * s) * np.expm1(r * s * s)
+    left_out -= covariance_matrix(series, correlation, variances)[0, 1]
+
+    bound = truncation_bound(series, correlation, variances)[0, 1]
+    assert left_out <= bound <= 1.02 * left_out
+
+
 def test_full_dependence_stays_within_the_bound():
     """At r = 1 two discrete costs that are one: the rest is what the bound says."""
     shape = Discrete(values=(0.0, 1.0, 5.0), probabilities=(0.5, 0.45, 0.05))

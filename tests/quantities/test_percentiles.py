@@ -113,6 +113,19 @@ def test_a_percentile_inside_a_large_step_is_sure():
     assert (found.low, found.value, found.high) == (7.0, 7.0, 7.0)
 
 
+def test_ties_count_from_both_sides():
+    """Zeros and ones, nearly half and half: the P50 is 1, and 0 is as likely.
+
+    Every trial is at or below 1, which would look sure; the shares below 1 differ.
+    """
+    zeros = [47, 52] * 8
+    blocks = np.array([[0.0] * count + [1.0] * (100 - count) for count in zeros])
+
+    found = block_interval(blocks, 50)
+
+    assert (found.low, found.value, found.high) == (0.0, 1.0, 1.0)
+
+
 def test_nothing_varies():
     """One value everywhere is its own percentile, with nothing around it."""
     found = block_interval(np.full((4, 8), 3.0), 80)

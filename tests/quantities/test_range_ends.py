@@ -49,6 +49,19 @@ def test_percentile_ends_are_met_and_the_mode_kept(
     )
 
 
+@pytest.mark.parametrize("percent", range(1, 50))
+@pytest.mark.parametrize("shape", ["pert", "triangular"])
+def test_the_mode_may_be_low_or_high_itself_at_every_percent(shape, percent):
+    """The root lies at the very end of its bracket; rounding must not lose it."""
+    ends = {"low_percent": percent, "high_percent": 100 - percent}
+    for likely in (3.0, 7.0):
+        found = from_range(shape, low=3, likely=likely, high=7, **ends)
+
+        assert found.cdf([3.0, 7.0]) == pytest.approx(
+            [percent / 100, 1.0 - percent / 100], abs=1e-13
+        )
+
+
 @pytest.mark.parametrize("shape", ["pert", "triangular", "lognormal"])
 @pytest.mark.parametrize("scale", [1e-7, 1.0, 1e12])
 @pytest.mark.parametrize("shift", [0.0, -3.0])

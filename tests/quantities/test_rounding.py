@@ -29,6 +29,19 @@ def test_the_largest_remainders_get_the_missing_steps():
     assert round_parts([0.2, 0.5, 0.3], step=1.0).tolist() == [0.0, 1.0, 0.0]
 
 
+def test_among_equals_the_earlier_part_comes_first():
+    """Remainders in a pattern: 0.75 before 0.5 before 0.25, each in file order."""
+    parts = np.tile([0.25, 0.75, 0.25, 0.5], 40)
+
+    found = round_parts(parts, step=1.0)
+
+    # 70 steps: the forty of 0.75, and the first thirty of 0.5.
+    assert parts.sum() == 70.0
+    assert found[1::4].tolist() == [1.0] * 40
+    assert found[3::4].tolist() == [1.0] * 30 + [0.0] * 10
+    assert not found[::2].any()
+
+
 def test_negative_parts_close_too():
     """Opportunities are negative parts: down is towards minus infinity for them too.
 
@@ -65,7 +78,7 @@ def test_no_parts_are_nothing():
 
 def test_nothing_has_no_sign():
     """A small negative part is printed as 0, not as -0."""
-    found = round_parts([-0.2, 0.1], step=1.0)
+    found = round_parts([-0.2, 0.1, -0.0], step=1.0)
 
-    assert found.tolist() == [0.0, 0.0]
+    assert found.tolist() == [0.0, 0.0, 0.0]
     assert not np.signbit(found).any()

@@ -197,6 +197,26 @@ def test_beta_pert_tails_agree_with_forty_digits(name, score):
     )
 
 
+@pytest.mark.parametrize("score", [-8.5, -4.0, -0.2, 0.6, 3.0, 8.5])
+def test_both_tails_keep_the_same_digits(score):
+    """A shape and its mirror image about 0 agree to the last digits, tail for tail."""
+    pairs = [
+        (
+            BetaPert(low=0.0, likely=0.3, high=1.0),
+            BetaPert(low=-1, likely=-0.3, high=0),
+        ),
+        (
+            Triangular(low=0.0, likely=0.3, high=1.0),
+            Triangular(low=-1.0, likely=-0.3, high=0.0),
+        ),
+        (Uniform(low=0.0, high=1.0), Uniform(low=-1.0, high=0.0)),
+    ]
+    for shape, mirrored in pairs:
+        assert float(mirrored.at_score(-score)) == pytest.approx(
+            -float(shape.at_score(score)), rel=1e-13
+        )
+
+
 def test_the_library_of_scipy_agrees():
     """Same distribution functions as scipy.stats, which shares no formula of ours."""
     pairs = [
