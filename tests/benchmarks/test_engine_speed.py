@@ -34,7 +34,7 @@ from tests.benchmarks.models import (
 )
 
 TRIALS = 65_536
-ROUNDS = 5
+ROUNDS = 3
 STREAMS = 300 + 1 + 80
 """Ranges, the general dependence, events: what the engine draws for the model."""
 
@@ -43,7 +43,8 @@ pytestmark = pytest.mark.benchmark
 
 def with_all_statistics(estimate):
     """Simulate, then everything from levels to drivers; returns the totals."""
-    simulation = simulate(estimate, threads=2)
+    model = build_model(estimate)
+    simulation = simulate(estimate, threads=2, model=model)
     for level in estimate.contingency.levels:
         funding_level(simulation, level)
     percentiles = all_percentiles(simulation)
@@ -53,7 +54,7 @@ def with_all_statistics(estimate):
         estimate, simulation, percent=target, total=percentiles[target - 1]
     )
     second_opinion(estimate, simulation, allocation)
-    find_drivers(estimate, simulation, exact_moments(build_model(estimate)))
+    find_drivers(estimate, simulation, exact_moments(model))
     return simulation.total
 
 
