@@ -20,7 +20,7 @@ from contingency.setting.levels import (
 from contingency.simulation.cost_model import build_model
 from contingency.simulation.cross_check import cross_check
 from contingency.simulation.engine import BlockRunner, Progress, simulate
-from contingency.simulation.exact import exact_moments
+from contingency.simulation.exact import ExactMoments, exact_moments
 from contingency.simulation.result import Simulation
 
 if TYPE_CHECKING:
@@ -106,18 +106,20 @@ def run_study(
     >>> study = run_study(read_estimate("example_estimates/footbridge/rev-b"))
     ... # doctest: +SKIP
     """
+    model = build_model(estimate)
     simulation = simulate(
-        estimate, threads=threads, progress=progress, runner=runner
+        estimate, threads=threads, progress=progress, runner=runner, model=model
     )
-    material = _material(estimate, simulation)
+    material = _material(estimate, simulation, exact_moments(model))
     findings, checks_run = run_checks(material)
     known = {f.name: getattr(material, f.name) for f in fields(material)}
     return Study(**known, findings=findings, checks_run=checks_run)
 
 
-def _material(estimate: Estimate, simulation: Simulation) -> Material:
+def _material(
+    estimate: Estimate, simulation: Simulation, exact: ExactMoments
+) -> Material:
     """Return all that follows from one simulation."""
-    exact = exact_moments(build_model(estimate))
     rule = estimate.contingency
     levels = tuple(funding_level(simulation, level) for level in rule.levels)
     asked = next((lv for lv in levels if lv.percent == rule.target), None)
@@ -139,7 +141,7 @@ def _material(estimate: Estimate, simulation: Simulation) -> Material:
         target=target,
         allocation=allocation,
         second_opinion=second_opinion(estimate, simulation, allocation),
-        drivers=find_drivers(estimate, simulation, exact),
+        drivers=find_drivers(estimate, simulation, exact.cause_share),
         implied_average_correlation=exact.implied_average_correlation,
         correlation_repair=simulation.correlation_repair,
         cross_check=cross_check(estimate, simulation, exact, percents),

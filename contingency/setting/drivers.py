@@ -9,7 +9,6 @@ import numpy as np
 from numpy.typing import NDArray
 
 from contingency.estimate.nouns import Estimate
-from contingency.simulation.exact import ExactMoments
 from contingency.simulation.result import Simulation
 
 
@@ -33,12 +32,21 @@ class Driver:
 
 
 def find_drivers(
-    estimate: Estimate, simulation: Simulation, exact: ExactMoments
+    estimate: Estimate, simulation: Simulation, cause_share: NDArray[np.float64]
 ) -> tuple[Driver, ...]:
     """Return every input as a driver, the largest share of variance first.
 
     Common causes follow after all others: they cut through the same variance another
     way.  Fixed packages are no drivers.  Money in price-date money.
+
+    Parameters
+    ----------
+    estimate : Estimate
+        Names and causes.
+    simulation : Simulation
+        Covariances, swings and removals, price-date money.
+    cause_share : (j,) array
+        Each cause's share of the variance, from `ExactMoments`.
 
     Notes
     -----
@@ -97,7 +105,7 @@ def find_drivers(
             id=cause.id,
             name=cause.name,
             kind="cause",
-            variance_share=float(exact.cause_share[j]),
+            variance_share=float(cause_share[j]),
             mean_shift=0.0,
             swing=_pair(simulation.cause_swing[j]),
             removal_effect=float(simulation.cause_removal[j]),

@@ -296,13 +296,16 @@ def _without_ranges(
         rows = slice(first, first + TILE)
         value = work.value[rows]
         moved = work.tile[: value.shape[0]]
-        np.subtract(value, model.base[rows], out=moved)
-        if factor.shape[0] == 1:
-            moved *= factor
+        if not model.systemic:
+            # The base is the same in every trial: it comes back after the ranking.
+            np.subtract(total, value, out=moved)
         else:
+            np.subtract(value, model.base[rows], out=moved)
             moved *= factor[model.pattern_of[rows]]
-        np.subtract(total, moved, out=moved)
+            np.subtract(total, moved, out=moved)
         place = rank(BLOCK, model.target) - 1
         moved.partition(place, axis=1)
         result[first : first + value.shape[0]] = moved[:, place]
+    if not model.systemic:
+        result += model.base[:, 0]
     return result

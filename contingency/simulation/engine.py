@@ -35,6 +35,7 @@ def simulate(
     threads: int = 1,
     progress: Progress | None = None,
     runner: BlockRunner | None = None,
+    model: CostModel | None = None,
 ) -> Simulation:
     """Return the simulated total cost of an estimate and the sums of its parts.
 
@@ -53,6 +54,8 @@ def simulate(
         Called as ``progress(trials_done, trials_at_most)``.
     runner : callable, optional
         Runs blocks in another place, for example on a cluster.
+    model : CostModel, optional
+        The estimate as arrays, where the caller has built it already.
 
     Returns
     -------
@@ -64,7 +67,7 @@ def simulate(
     McKay, Beckman and Conover (1979), doi:10.2307/1268522, for the sampling;
     ``docs/method.md`` for everything else.
     """
-    model = build_model(estimate)
+    model = model or build_model(estimate)
     centre = exact_mean(model)
     run = runner or _local_runner(threads)
     gathered = _Gathered(model, centre)

@@ -26,6 +26,8 @@ from contingency.simulation.cost_model import CostModel, Repeated
 Array = NDArray[np.float64]
 
 _SMALLEST = 2.0**-53
+Occurrences = tuple[NDArray[np.int64], Array]
+"""Trials in which an event happens, and the place on its impact curve in each."""
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -55,15 +57,28 @@ def draw_events(model: CostModel, block: int, source: Source) -> DrawnEvents:
         trials, place = happening[event]
         if allowed is not None:
             kept = allowed[trials]
-            trials, place = trials[kept], place[kept]
-        drawn.occurs[event, trials] = True
-        drawn.cost[event, trials] = _impact(model, event, place)
+            happening[event] = trials[kept], place[kept]
+        drawn.occurs[event, happening[event][0]] = True
+    _cost_once(model, happening, drawn)
     return drawn
 
 
-def _draw_units(
-    model: CostModel, block: int, source: Source
-) -> dict[int, tuple[NDArray[np.int64], Array]]:
+def _cost_once(
+    model: CostModel, happening: dict[int, Occurrences], drawn: DrawnEvents
+) -> None:
+    """Cost all events that happen once, in one go over all their occurrences."""
+    by_row = sorted(happening, key=lambda event: int(model.impact_row[event]))
+    if not by_row:
+        return
+    counts = [happening[event][0].size for event in by_row]
+    trials = np.concatenate([happening[event][0] for event in by_row])
+    place = np.concatenate([happening[event][1] for event in by_row])
+    cost = _impact(model, np.repeat(model.impact_row[by_row], counts), place)
+    cost *= np.repeat([model.events[event].sign for event in by_row], counts)
+    drawn.cost[np.repeat(by_row, counts), trials] = cost
+
+
+def _draw_units(model: CostModel, block: int, source: Source) -> dict[int, Occurrences]:
     """Return for each event its trials, parents put aside, and places on the curve."""
     cells = strata(source, [unit.stream for unit in model.units], block)
     u = uniforms(cells)
@@ -79,14 +94,12 @@ def _draw_units(
     return result
 
 
-def _impact(model: CostModel, event: int, place: Array) -> Array:
-    """Return the signed cost at places in [0, 1) of the event's impact curve."""
-    if not place.size:
-        return place
-    score = ndtri(np.clip(place, _SMALLEST, 1.0 - _SMALLEST))[None, :]
+def _impact(model: CostModel, row: NDArray[np.int64], place: Array) -> Array:
+    """Return the cost at places in [0, 1) of the impact curves `row`, ascending."""
+    score = np.asarray(ndtri(np.clip(place, _SMALLEST, 1.0 - _SMALLEST)))
     cost = np.empty_like(score)
-    model.impacts.read(score, int(model.impact_row[event]), cost)
-    return np.asarray(cost[0] * model.events[event].sign)
+    model.impacts.read_each(score, row, cost)
+    return cost
 
 
 def _repeat(
@@ -110,4 +123,6 @@ def _repeat(
     for turn in range(1, int(times.max()) + 1):
         trials = np.flatnonzero(times >= turn)
         place = plain_uniforms(source.raw(f"{repeated.stream}/{turn}", block))
-        drawn.cost[event, trials] += _impact(model, event, place[trials])
+        row = np.full(trials.size, model.impact_row[event])
+        cost = _impact(model, row, place[trials])
+        drawn.cost[event, trials] += model.events[event].sign * cost
