@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from contingency.assurance.declaration import (
+    COMMON_PRACTICE,
     Hit,
     NotApplicable,
     Source,
@@ -59,6 +60,14 @@ CAP_GAP = Threshold(
     grade="H",
     meaning="caution within",
     most=100,
+)
+SEED_PLACE = Threshold(
+    name="lucky_seed_place",
+    default=3,
+    unit="of twenty",
+    grade="H",
+    meaning="fewest fresh seeds below the issued amount",
+    most=20,
 )
 REQUEST_GAP = Threshold(
     name="request_gap_percent",
@@ -163,6 +172,38 @@ def total_fits_the_cap(material: Material, settings: Settings) -> Verdict:
         f"The total of {money(material.target.total, currency)} at"
         f" {material.target.name} lies within {percent(abs(gap), 2)} of the ceiling"
         f" of {money(cap, currency)} that was known before."
+    )
+    return [Hit(severity="caution", message=message)]
+
+
+@result_check(
+    slug="lucky-seed",
+    subject="level and presentation",
+    title="A lucky seed",
+    catches="A seed that was tried out until the amount came out low.",
+    rule=(
+        "Number of fresh runs, of twenty, with a contingency below the issued one. An"
+        " honest run as long as the fresh ones has fewer than three below it three"
+        " times in twenty-one; a longer one more seldom."
+    ),
+    thresholds=(SEED_PLACE,),
+    severities=("caution",),
+    todo="Run again with a seed that was fixed beforehand, or with more trials.",
+    sources=(NAO_HEAD, COMMON_PRACTICE),
+)
+def lucky_seed(material: Material, settings: Settings) -> Verdict:
+    """Find whether the issued amount lies low among runs with other seeds."""
+    if material.robustness is None:
+        return NotApplicable("No runs with fresh seeds were made.")
+    test = material.robustness.seeds
+    if test.below >= settings.number(SEED_PLACE):
+        return []
+    currency = material.estimate.currency
+    middle = float(np.median(test.contingencies))
+    message = (
+        f"Only {test.below} of {len(test.seeds)} fresh seeds give less than the issued"
+        f" {money(test.issued, currency)}; half of them give"
+        f" {money(middle, currency)} or more."
     )
     return [Hit(severity="caution", message=message)]
 
@@ -326,6 +367,7 @@ CHECKS = (
     level_without_authority,
     odd_level,
     total_fits_the_cap,
+    lucky_seed,
     added_percentiles,
     no_spread,
     one_level_only,

@@ -9,6 +9,7 @@ from contingency.estimate.nouns import Estimate
 
 if TYPE_CHECKING:
     # For the type checker only: `contingency check` must not load the engine.
+    from contingency.assurance.robustness import Robustness
     from contingency.setting.allocation import Allocation, SecondOpinion
     from contingency.setting.drivers import Driver
     from contingency.setting.levels import FundingLevel
@@ -61,6 +62,8 @@ class Material:
     cross_check: CrossCheck
     funding: tuple[YearAmounts, ...] = ()
     """Years of the funding table; empty where none was computed."""
+    robustness: Robustness | None = None
+    """What the number rests on; None where it was not asked for."""
 
     def percentile(self, percent: int) -> float:
         """Return the total at P`percent`, price-date money; 1 to 99."""

@@ -8,6 +8,7 @@ import datetime as dt
 from functools import cache
 
 from contingency.assurance.findings import CheckOutcome, Finding
+from contingency.assurance.robustness import Robustness, what_it_rests_on
 from contingency.assurance.run import run_checks, run_input_checks
 from contingency.estimate.nouns import (
     Answer,
@@ -185,6 +186,20 @@ def sound_study() -> Study:
 def spoiled(**changes):
     """The sound study with other results."""
     return dataclasses.replace(sound_study(), **changes)
+
+
+@cache
+def rested() -> Robustness:
+    """What the number of the sound study rests on."""
+    return what_it_rests_on(sound_study())
+
+
+def reseeded(issued):
+    """The sound study, its issued contingency a quantile of those of fresh seeds."""
+    seeds = rested().seeds
+    amount = sorted(seeds.contingencies)[round(issued * 19)]
+    test = dataclasses.replace(seeds, issued=amount)
+    return spoiled(robustness=dataclasses.replace(rested(), seeds=test))
 
 
 def findings_of(

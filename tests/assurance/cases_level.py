@@ -11,6 +11,7 @@ from tests.assurance.builder import (
     RULE,
     SIGN_OFFS,
     changed,
+    reseeded,
     sound_estimate,
     sound_study,
     spoiled,
@@ -244,6 +245,14 @@ CASES = (
         "within 0.20 % of the ceiling",
     ),
     twin("total-fits-the-cap", "well below", lambda: cap(0.03)),
+    fault(
+        "lucky-seed",
+        "lower than all but one",
+        lambda: reseeded(1 / 19),
+        "caution",
+        "Only 1 of 20 fresh seeds give less than the issued EUR",
+    ),
+    twin("lucky-seed", "in the middle", lambda: reseeded(0.5)),
     fault(
         "added-percentiles",
         "package percentiles added up",
