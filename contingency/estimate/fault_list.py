@@ -15,6 +15,8 @@ FILE_ORDER = (
     "events.csv",
     "causes.csv",
     "correlations.csv",
+    "changes.csv",
+    "drawdown.csv",
 )
 """The files that are interpreted, in the order in which their faults are listed."""
 

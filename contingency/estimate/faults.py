@@ -652,6 +652,31 @@ class EvidenceMissing(Fault):
 
 
 # ---------------------------------------------------------------------------
+# Changes since the previous revision
+
+
+class SuccessionUnclear(Fault):
+    """Ids before and after that describe no renaming, split or merger."""
+
+    slug = "succession-unclear"
+    law = (
+        "before and into name what became of a row: one and one for a new id, one and "
+        "several for a split, several and one for a merger; an id that stays names "
+        "the same thing."
+    )
+
+
+class RestTwice(Fault):
+    """Two lines that both explain all that is left of one base change."""
+
+    slug = "rest-twice"
+    law = (
+        "Of the lines about one package one may leave the amount blank: it explains "
+        "what the others leave."
+    )
+
+
+# ---------------------------------------------------------------------------
 # Laying out a new folder
 
 

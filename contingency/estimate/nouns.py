@@ -386,6 +386,81 @@ class SourceFile(Noun):
     content: bytes
 
 
+class Change(Noun):
+    """One line of changes.csv: why this revision differs from the previous one."""
+
+    file: Literal["packages", "systemic", "events", "causes", "estimate"] = "packages"
+    """The file, without its ending, that the ids belong to."""
+    id: str = ""
+    """The row; blank for the estimate as a whole, or where `before` is given."""
+    before: tuple[str, ...] = ()
+    """Ids of the previous revision that were renamed, split or merged."""
+    into: tuple[str, ...] = ()
+    """Ids of this revision that took their place."""
+    family: str = ""
+    """Why the base moved: a word of docs/revisions.md; blank where it did not."""
+    amount: float | None = None
+    """Part of the base change that this line explains, price-date money of this
+    revision, signed; None for all that the other lines leave."""
+    factor: float | None = None
+    """Money of this price date that buys what one unit of the earlier one bought."""
+    event: str = ""
+    """The event that the base change comes from."""
+    reason: str
+    by: str
+    on: dt.date | None = None
+    line: int
+
+
+class AccountEntry(Noun):
+    """One line of drawdown.csv: money into or out of the contingency account."""
+
+    id: str = ""
+    date: dt.date
+    kind: Literal["opening", "added", "drawn", "released"] = "drawn"
+    amount: float
+    """Positive, in the money in which the account is kept."""
+    event: str = ""
+    package: str = ""
+    """The package whose estimate uncertainty was drawn on."""
+    reason: str = ""
+    approved_by: str = ""
+    role: str = ""
+    in_scope: bool | None = None
+    """Answer to: does the money stay inside the approved scope?"""
+    line: int
+
+    @property
+    def label(self) -> str:
+        """The entry's id, or its date."""
+        return self.id or self.date.isoformat()
+
+
+class Milestone(Noun):
+    """One point of the minimum curve of the contingency account."""
+
+    name: str
+    on: dt.date
+    amount: float
+    """Least contingency that must be left on that day, money of the account."""
+
+
+class Delegation(Noun):
+    """How much one role may approve in a single draw."""
+
+    role: str
+    up_to: float | None = None
+    """Money of the account; None without limit."""
+
+
+class AccountRule(Noun):
+    """Rules of the contingency account, from [account] in estimate.toml."""
+
+    minimum: tuple[Milestone, ...] = ()
+    """By date, rising."""
+    delegations: tuple[Delegation, ...] = ()
+
+
 class Estimate(Noun):
     """One revision of one estimate, as read from its folder."""
 
@@ -422,6 +497,12 @@ class Estimate(Noun):
     events: tuple[RiskEvent, ...] = ()
     causes: tuple[CommonCause, ...] = ()
     correlations: tuple[PairCorrelation, ...] = ()
+
+    changes: tuple[Change, ...] = ()
+    """What changes.csv says about the way from the previous revision to this one."""
+    account: tuple[AccountEntry, ...] = ()
+    """The contingency account to date, from drawdown.csv, by date."""
+    account_rule: AccountRule = AccountRule()
 
     sources: tuple[SourceFile, ...] = ()
     """Every file that was read, byte for byte; sorted by name."""

@@ -11,7 +11,9 @@ from __future__ import annotations
 from collections.abc import Mapping
 from pathlib import Path
 
+from contingency.estimate import account as drawdown_csv
 from contingency.estimate import causes as causes_csv
+from contingency.estimate import changes as changes_csv
 from contingency.estimate import events as events_csv
 from contingency.estimate import packages as packages_csv
 from contingency.estimate import systemic as systemic_csv
@@ -31,6 +33,8 @@ LAYOUTS = (
     events_csv.LAYOUT,
     causes_csv.CAUSES,
     causes_csv.CORRELATIONS,
+    changes_csv.LAYOUT,
+    drawdown_csv.LAYOUT,
 )
 """The tables of an estimate folder, in the order of docs/inputs.md."""
 
@@ -103,6 +107,12 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
     table = tables["correlations.csv"]
     pairs = causes_csv.read_correlations(table, packages) if table else ()
     causes_csv.refuse_both(table, tables["packages.csv"], faults)
+    table = tables["changes.csv"]
+    changes = changes_csv.read_changes(table, tables) if table else ()
+    table, known = tables["drawdown.csv"], packages.ids if packages else None
+    account = (
+        drawdown_csv.read_account(table, tables["events.csv"], known) if table else ()
+    )
     for name in CARRIED:
         if folder.has(name):
             folder.carry(name)
@@ -124,6 +134,9 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
         events=events,
         causes=causes,
         correlations=pairs,
+        changes=changes,
+        account=account,
+        account_rule=settings.account_rule,
         sources=folder.sources,
     )
 

@@ -10,6 +10,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any
 
+from contingency.estimate.account import ACCOUNT_KEYS, read_account_rule
 from contingency.estimate.cells import read_ends
 from contingency.estimate.currencies import CURRENCIES
 from contingency.estimate.fault_list import (
@@ -33,6 +34,7 @@ from contingency.estimate.faults import (
     TrialsOutOfOrder,
 )
 from contingency.estimate.nouns import (
+    AccountRule,
     Answer,
     Assumption,
     ContingencyRule,
@@ -81,6 +83,7 @@ KEYS: dict[str, tuple[str, ...]] = {
     "statements.exclusions": ("id", "text", "carried_by", "size"),
     "sign_off": ("role", "name", "position"),
     "answers": ("check", "where", "answer", "by", "on"),
+    **ACCOUNT_KEYS,
 }
 """The keys under each heading of estimate.toml, in the order of docs/inputs.md.
 [assurance] takes the names of thresholds, which the assurance room knows."""
@@ -118,6 +121,7 @@ class Settings:
     sign_offs: tuple[SignOffLine, ...]
     answers: tuple[Answer, ...]
     assurance: dict[str, float | int | str | bool]
+    account_rule: AccountRule
 
 
 def read_settings(text: str, faults: FaultList) -> Settings | None:
@@ -145,6 +149,7 @@ def read_settings(text: str, faults: FaultList) -> Settings | None:
         sign_offs=_sign_offs(root),
         answers=_answers(root),
         assurance=_assurance(root),
+        account_rule=read_account_rule(root.inside("account")),
     )
 
 
