@@ -17,7 +17,7 @@ from contingency.assurance.declaration import (
     input_check,
 )
 from contingency.assurance.settings import Settings, Threshold, WordList
-from contingency.assurance.wording import words_found
+from contingency.assurance.wording import listed, words_found
 from contingency.estimate.nouns import PROJECT_WIDE, Estimate, RiskEvent
 
 SIMILAR_TITLES = Threshold(
@@ -90,15 +90,30 @@ def counted_twice(estimate: Estimate, settings: Settings) -> Verdict:
     if len(rows) < 2:
         return NotApplicable("Fewer than two rows could carry one exposure.")
     limit = settings.number(SIMILAR_TITLES)
+    # Ranges that share one cause with one other row are one story, told once.
+    stories: dict[tuple[str, str, str], list[_Tagged]] = {}
+    for first, second in combinations(rows, 2):
+        why = _alike(first, second, limit)
+        if why:
+            alone = "" if first.kind == "range" else first.id
+            stories.setdefault((second.id, why, alone), []).append(first)
+    labels = {row.id: row.label for row in rows if row.kind != "range"}
     return [
         Hit(
             severity="major",
-            where=second.id,
-            message=f"{first.label} and {second.label} {why}. Which one carries it?",
+            where=second,
+            message=(
+                f"{_told(firsts)} and {labels[second]} {why}. Which one carries it?"
+            ),
         )
-        for first, second in combinations(rows, 2)
-        if (why := _alike(first, second, limit))
+        for (second, why, _), firsts in stories.items()
     ]
+
+
+def _told(firsts: list[_Tagged]) -> str:
+    if len(firsts) == 1:
+        return firsts[0].label
+    return f"the ranges of {listed(row.id for row in firsts)}"
 
 
 def _tagged(estimate: Estimate) -> Iterator[_Tagged]:

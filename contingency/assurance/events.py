@@ -175,7 +175,7 @@ def _rare_large(
         severity="note" if held else "major",
         where=event.id,
         message=(
-            f"If {event.label} happens it costs about {money(impact, currency)},"
+            f"{event.label}: if it happens it costs about {money(impact, currency)},"
             f" {percent(impact / material.target.contingency)} of the contingency."
             f" {material.target.name} holds"
             f" {money(max(coverage, 0.0) * impact, currency)} of that"

@@ -3,9 +3,12 @@
 import dataclasses
 import datetime as dt
 
-from contingency.estimate.nouns import PackageShare
+from contingency.estimate.nouns import Load, PackageShare
 from tests.assurance.builder import (
     EVENTS,
+    PACKAGES,
+    cause,
+    changed,
     cost,
     event,
     package,
@@ -146,6 +149,22 @@ CASES = (
         lambda: sound_estimate(systemic=(systemic(cause="soil"),), events=tagged()),
         "major",
         "systemic risk S1 Definition of scope and event R1",
+        where="R1",
+    ),
+    fault(
+        "counted-twice",
+        "two ranges and an event",
+        lambda: sound_estimate(
+            causes=(cause("soil", "Soil"),),
+            packages=changed(
+                changed(PACKAGES, "P1", loads=(Load(cause="soil", weight=0.4),)),
+                "P2",
+                loads=(Load(cause="soil", weight=0.4),),
+            ),
+            events=changed(EVENTS, "R1", cause="soil"),
+        ),
+        "major",
+        "the ranges of P1, P2 and event R1 Unknown wreck in the basin have the same",
         where="R1",
     ),
     twin(
