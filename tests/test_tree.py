@@ -18,7 +18,10 @@ TOP = {
     "docs",
 }
 
-LEFT_BY_TOOLS = {"__pycache__", "dist", "build", "contingency-report"}
+LEFT_BY_TOOLS = re.compile(
+    r"__pycache__|dist|build|draft-.*|.*\.egg-info|.*\.actual\..*"
+)
+"""Folders and files that git ignores, the drafts of the README's line among them."""
 
 PERSONAL = re.compile(r"(?<![\w.*)])/(?:work|root|home|tmp|Users|private/var)/\w")
 """A path that exists on one machine only."""
@@ -32,7 +35,7 @@ def is_left_by_a_tool(path: Path) -> bool:
     parts = path.relative_to(ROOT).parts
     if parts[0].startswith(".") and parts[0] not in {".ci", ".gitignore"}:
         return True
-    return any(p in LEFT_BY_TOOLS or p.endswith(".egg-info") for p in parts)
+    return any(LEFT_BY_TOOLS.fullmatch(part) for part in parts)
 
 
 def texts() -> dict[str, str]:
