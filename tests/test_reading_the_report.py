@@ -1,0 +1,68 @@
+"""The guide to the report follows the report, and quotes its figures."""
+
+import re
+from pathlib import Path
+
+import pytest
+
+from contingency.estimate.reading import read_estimate
+from contingency.study import run_study
+
+ROOT = Path(__file__).parents[1]
+GUIDE = (ROOT / "docs" / "reading-the-report.md").read_text(encoding="utf-8")
+TEMPLATES = ROOT / "report_templates"
+EXAMPLE = ROOT / "example_estimates" / "island-power-link" / "rev-c"
+
+
+@pytest.fixture(scope="module")
+def study():
+    """The whole job for the example that the guide quotes."""
+    return run_study(read_estimate(EXAMPLE))
+
+
+def chapters():
+    """Headings of the templates in the order in which the report includes them."""
+    report = (TEMPLATES / "report.html").read_text(encoding="utf-8")
+    found = []
+    for name in re.findall(r'{% include "([\w-]+\.html)" %}', report):
+        text = (TEMPLATES / name).read_text(encoding="utf-8")
+        found += re.findall(r"<h1[^>]*>([^<{]+)</h1>", text)
+    return found
+
+
+def test_the_guide_has_a_section_for_every_chapter_in_order():
+    """And for no chapter that the report does not have."""
+    sections = re.findall(r"^## (.+)$", GUIDE, re.MULTILINE)
+
+    assert sections == ["Which pages for whom", "Title page", *chapters()]
+
+
+def test_the_guide_quotes_the_figures_of_the_example(study):
+    """Every quotation in italics with a figure in it, from the unrounded results."""
+    million = 1e6
+    target = study.target
+    total = round(study.estimate.base / million, 1) + round(
+        target.contingency / million, 1
+    )
+    rare = next(d for d in study.drivers if d.id == "E03")
+    event = next(e for e in study.estimate.events if e.id == "E03")
+    cost = event.impact_used.distribution.mean
+    held = rare.removal_effect
+
+    asked = (
+        f"EUR {target.contingency / million:.1f} million on a base of"
+        f" EUR {study.estimate.base / million:.1f} million, a request of"
+        f" EUR {total:.1f} million at P80; the contingency is"
+        f" {target.percent_of_base:.1f} % of the base."
+    )
+    enough = f"{100 * study.chance_base_is_enough:.1f} %"
+    p10, p90 = (study.percentiles[percent - 1] / million for percent in (10, 90))
+    middle = f"{p10:.1f} to {p90:.1f} million"
+    unpaid = (
+        f"Event E03 would cost EUR {cost / million:.1f} million; P80 holds"
+        f" EUR {held / million:.1f} million of it, {100 * held / cost:.0f} %."
+    )
+
+    quoted = re.findall(r"\*([^*]*\d[^*]*)\*", GUIDE)
+
+    assert quoted == [asked, enough, middle, unpaid]
