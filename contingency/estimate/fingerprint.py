@@ -8,7 +8,7 @@ import re
 from typing import Any
 
 from contingency.estimate.evidence import named_files
-from contingency.estimate.nouns import CostRange, Estimate, Noun
+from contingency.estimate.nouns import CostRange, Ends, Estimate, Noun
 
 FORM = "contingency-estimate/1"
 """Name of the canonical form; a new one would change every fingerprint."""
@@ -46,11 +46,13 @@ def fingerprint(estimate: Estimate) -> str:
 def canonical_form(estimate: Estimate) -> dict[str, Any]:
     """Return everything that was read, as plain values in a settled order."""
     skipped = {"sources", "fingerprint", "correlations"}
-    form = {
-        name: _plain(name, value)
-        for name, value in _fields(estimate).items()
-        if name not in skipped
-    }
+    form = _filled(
+        {
+            name: _plain(name, value)
+            for name, value in _fields(estimate).items()
+            if name not in skipped
+        }
+    )
     form["form"] = FORM
     form["correlations"] = sorted(
         [*sorted((pair.a, pair.b)), pair.correlation] for pair in estimate.correlations
@@ -71,8 +73,12 @@ def _fields(noun: Noun) -> dict[str, Any]:
 
 def _plain(name: str, value: object) -> Any:  # noqa: ANN401  (any JSON value)
     """Return the value of a field as JSON has it, lists without order sorted."""
+    if isinstance(value, Ends):
+        return str(value)
     if isinstance(value, Noun):
-        plain = {k: _plain(k, v) for k, v in _fields(value).items() if k != "line"}
+        plain = _filled(
+            {k: _plain(k, v) for k, v in _fields(value).items() if k != "line"}
+        )
         if isinstance(value, CostRange):
             plain["written"] = [_way_of_writing(cell) for cell in value.written]
         return plain
@@ -83,6 +89,15 @@ def _plain(name: str, value: object) -> Any:  # noqa: ANN401  (any JSON value)
     if value is None or isinstance(value, str | int | float | bool):
         return value
     return str(value)  # a date
+
+
+def _filled(fields: dict[str, Any]) -> dict[str, Any]:
+    """Return the fields that say something.
+
+    A column that a later version adds, and that an estimate leaves blank, must not
+    change the estimate's fingerprint.
+    """
+    return {k: v for k, v in fields.items() if v not in (None, "", [], {})}
 
 
 def _ordered(name: str, items: list[Any]) -> list[Any]:
