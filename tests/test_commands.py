@@ -6,7 +6,7 @@ from pathlib import Path
 
 import pytest
 
-from contingency import cli
+from contingency import cli, publish
 
 PAGE = (Path(__file__).parents[1] / "docs" / "commands.md").read_text(encoding="utf-8")
 SHARED = "What every command takes"
@@ -80,3 +80,18 @@ def test_the_exit_statuses_of_the_page_are_those_of_the_code():
     numbers = re.findall(r"^\| (\d+) \|", sections()["Exit status"], re.MULTILINE)
 
     assert [int(n) for n in numbers] == [cli.DONE, cli.ATTENTION, cli.WRONG, 130]
+
+
+def test_the_page_names_every_file_that_a_report_writes():
+    """Files in the section on `report` are those of contingency/publish.py."""
+    named = re.findall(
+        r"`([\w-]+\.(?:pdf|json|csv))`", sections()["contingency report"]
+    )
+
+    assert set(named) == {
+        publish.REPORT,
+        publish.RESULTS,
+        "allocation.csv",
+        "percentiles.csv",
+        "drivers.csv",
+    }
