@@ -15,10 +15,12 @@ import io
 import re
 import zlib
 from collections.abc import Iterator
+from contextlib import contextmanager
 from dataclasses import dataclass
+from hashlib import sha256
 from typing import TYPE_CHECKING, Any
 
-from contingency.errors import UnreadableReport
+from contingency.errors import ContingencyError, UnreadableReport
 
 if TYPE_CHECKING:
     import pikepdf
@@ -65,9 +67,7 @@ def read_attachments(pdf: bytes) -> tuple[Attachment, ...]:
         files have one name, a file lies outside the list, or is stored in a way that
         no report of this program has.
     """
-    import pikepdf
-
-    with opened(pdf) as document:
+    with refusing_the_unforeseen(), opened(pdf) as document:
         specs = list(_listed(document))
         _refuse_files_outside(document, [spec for _, spec in specs])
         names = [name for name, _ in specs]
@@ -77,13 +77,8 @@ def read_attachments(pdf: bytes) -> tuple[Attachment, ...]:
         found: list[Attachment] = []
         left = LARGEST_SUM
         for name, spec in specs:
-            try:
-                content = _content(name, spec, min(left, LARGEST_FILE))
-                relationship = str(spec.get("/AFRelationship", "")).lstrip("/")
-            except (pikepdf.PdfError, ValueError, TypeError, AttributeError) as fault:
-                raise _refused(
-                    f'"{_shown(name)}" in it cannot be read ({fault}).'
-                ) from None
+            content = _content(name, spec, min(left, LARGEST_FILE))
+            relationship = str(spec.get("/AFRelationship", "")).lstrip("/")
             if relationship not in RELATIONSHIPS:
                 raise _refused(f'the relation of "{_shown(name)}" to it is not stated.')
             left -= len(content)
@@ -115,6 +110,38 @@ def opened(pdf: bytes) -> pikepdf.Pdf:
         document.close()
         raise _refused("it is encrypted.")
     return document
+
+
+@contextmanager
+def refusing_the_unforeseen() -> Iterator[None]:
+    """Turn whatever a library raises over a hostile PDF into UnreadableReport."""
+    try:
+        yield
+    except ContingencyError:
+        raise
+    except Exception as fault:
+        raise _refused(
+            f"reading it failed ({type(fault).__name__}: {_first_line(fault)})."
+        ) from fault
+
+
+def all_objects(document: pikepdf.Pdf) -> Iterator[tuple[tuple[int, int], bytes]]:
+    """Give number and text of every object of a PDF that is not null.
+
+    Of a stream the text is its dictionary and the SHA-256 of its bytes as stored;
+    objects that it refers to stand in it by number.
+    """
+    import pikepdf
+
+    # Explicit: else a number that stands as an object of its own loses its number.
+    with pikepdf.explicit_conversion():
+        for thing in document.objects:
+            if isinstance(thing, pikepdf.Stream):
+                digest = sha256(thing.read_raw_bytes()).hexdigest().encode()
+                text = pikepdf.Dictionary(dict(thing)).unparse()
+                yield thing.objgen, text + b" stream " + digest
+            elif isinstance(thing, pikepdf.Object):
+                yield thing.objgen, bytes(thing.unparse(resolved=True))
 
 
 def attachments_apart(arguments: dict[str, Any], blobs: list[bytes]) -> Answer:
@@ -229,20 +256,9 @@ def _packing(stream: Any) -> str | None:  # noqa: ANN401  (as above)
 def _refuse_files_outside(document: pikepdf.Pdf, specs: list[Any]) -> None:
     """Refuse a PDF with a file that its list does not name, such as in a comment."""
     known = {spec.objgen for spec in specs if spec.is_indirect}
-    for thing in document.objects:
-        if thing.objgen not in known and _HOLDS_FILE.search(_as_text(thing)):
+    for number, text in all_objects(document):
+        if number not in known and _HOLDS_FILE.search(text):
             raise _refused("a file is hidden in it outside the list of its files.")
-
-
-def _as_text(thing: Any) -> bytes:  # noqa: ANN401  (as above)
-    """Return an object as text; of a stream only its dictionary."""
-    import pikepdf
-
-    if isinstance(thing, pikepdf.Stream):
-        return pikepdf.Dictionary(dict(thing)).unparse()
-    if isinstance(thing, pikepdf.Dictionary | pikepdf.Array):
-        return bytes(thing.unparse(resolved=True))
-    return b""
 
 
 def _shown(name: str) -> str:

@@ -45,7 +45,7 @@ def signature_in(contents: str) -> tuple[bytes, tuple[str, ...]]:
         return b"", ("it is not written in hexadecimal digits",)
     if len(contents) != 2 * len(padded):
         faults.append("its hexadecimal digits are spaced out")
-    length = _length(padded)
+    length = _length(padded) if padded[:1] == b"\x30" else None
     if length is None:
         return b"", (*faults, "it does not begin as a signature does")
     if padded[length:].strip(b"\0"):
@@ -73,7 +73,7 @@ def form_faults(signature: bytes) -> tuple[str, ...]:
     if signed["version"].native != "v1":
         faults.append("its version is another")
     faults += _unsigned_faults(signed["signer_infos"][0])
-    if _parts(signature, force=False) != _parts(signature, force=True):
+    if not all(_is_der(part) for part in _parts(signed)):
         faults.append("it is not written in the one form of DER")
     return tuple(faults)
 
@@ -124,46 +124,59 @@ def _algorithm_faults(signed: Any, signer: Any) -> Iterator[str]:  # noqa: ANN40
 
 def _certificate_faults(signer: Any, certificates: Sequence[Any]) -> Iterator[str]:  # noqa: ANN401
     """Give which certificates are not what the signature or each other say."""
-    holder = [
-        c
-        for c in certificates
-        if c.issuer == signer["sid"].chosen["issuer"]
-        and c.serial_number == signer["sid"].chosen["serial_number"].native
-    ]
-    if len(holder) != 1:
-        yield "the certificate of its signer is not in it"
-        return
-    if not _is_named_inside(signer, holder[0]):
-        yield "the certificate of its signer is not the one that was signed with"
-    loaded = [x509.load_der_x509_certificate(c.dump()) for c in certificates]
-    if len({c.dump() for c in certificates}) != len(certificates):
+    if len({one.dump() for one in certificates}) != len(certificates):
         yield "it carries a certificate twice"
-    for one in loaded:
+    holder = [
+        one
+        for one in certificates
+        if one.issuer == signer["sid"].chosen["issuer"]
+        and one.serial_number == signer["sid"].chosen["serial_number"].native
+    ]
+    named = list(_digests_inside(signer))
+    if len(holder) != 1 or not named or not _is_in(holder[0], named[:1]):
+        yield "the certificate of its signer is not the one that was signed with"
+        return
+    loaded = [x509.load_der_x509_certificate(one.dump()) for one in certificates]
+    for one, plain in zip(loaded, certificates, strict=True):
+        if _is_in(plain, named):
+            continue  # the signature covers its digest
+        name = one.subject.rfc4514_string()
         issuers = [other for other in loaded if other.subject == one.issuer]
         if issuers and not any(_issued(one, issuer) for issuer in issuers):
-            yield f"the certificate of {one.subject.rfc4514_string()} is damaged"
-        elif not issuers and one is not loaded[certificates.index(holder[0])]:
-            # Nothing in here vouches for it, so nothing would show a change in it.
-            if any(one.subject == other.issuer for other in loaded):
-                continue  # it issued another one: a change shows there or in a path
-            yield f"the certificate of {one.subject.rfc4514_string()} has no use"
+            yield f"the certificate of {name} is damaged"
+        elif not issuers and all(one.subject != other.issuer for other in loaded):
+            yield f"the certificate of {name} has no use"
 
 
-def _is_named_inside(signer: Any, certificate: Any) -> bool:  # noqa: ANN401
-    """Whether the covered part names this certificate by its digest (RFC 5035)."""
+def _digests_inside(signer: Any) -> Iterator[tuple[str, bytes]]:  # noqa: ANN401
+    """Give the digests of certificates that the signature covers (RFC 5035).
+
+    The first is that of the signer.  Seals of this program name all certificates
+    that they carry; others may name the first alone.
+    """
     for attribute in signer["signed_attrs"]:
         kind = attribute["type"].dotted
         if kind == _SIGNING_CERTIFICATE_V2:
-            value = tsp.SigningCertificateV2.load(attribute["values"][0].dump())
-            first = value["certs"][0]
-            name = first["hash_algorithm"]["algorithm"].native
-            digest = _DIGESTS[name](certificate.dump()).digest()
-            return bool(first["cert_hash"].native == digest)
-        if kind == _SIGNING_CERTIFICATE:
+            new = tsp.SigningCertificateV2.load(attribute["values"][0].dump())
+            for one in new["certs"]:
+                name = one["hash_algorithm"]["algorithm"].native
+                yield name, one["cert_hash"].native
+        elif kind == _SIGNING_CERTIFICATE:
             # Time-stamp servers still use the older form, with SHA-1 (RFC 2634).
             old = tsp.SigningCertificate.load(attribute["values"][0].dump())
-            return bool(old["certs"][0]["cert_hash"].native == certificate.sha1)
-    return False
+            for one in old["certs"]:
+                yield "sha1", one["cert_hash"].native
+
+
+def _is_in(certificate: Any, named: Sequence[tuple[str, bytes]]) -> bool:  # noqa: ANN401
+    digests = {
+        **{
+            name: digest(certificate.dump()).digest()
+            for name, digest in _DIGESTS.items()
+        },
+        "sha1": certificate.sha1,
+    }
+    return any(digests.get(name) == digest for name, digest in named)
 
 
 def _issued(certificate: x509.Certificate, issuer: x509.Certificate) -> bool:
@@ -194,40 +207,47 @@ def _unsigned_faults(signer: Any) -> Iterator[str]:  # noqa: ANN401
         yield "something stands beside its time stamp"
 
 
-def _parts(signature: bytes, *, force: bool) -> bytes:
-    """Return a signature part by part, as read or (by force) written anew.
+def _parts(signed: Any) -> Iterator[bytes]:  # noqa: ANN401
+    """Give a signature part by part, as it was read.
 
     Its time stamp was made elsewhere, in whatever form of ASN.1, and is left out.
     """
-    content = cms.ContentInfo.load(signature, strict=True)
-    signed = content["content"]
     (signer,) = signed["signer_infos"]
-    parts = [
-        signed[key].dump(force=force)
-        for key in ("version", "digest_algorithms", "encap_content_info")
-    ]
-    parts += sorted(one.dump(force=force) for one in signed["certificates"])
-    parts += [
-        signer[key].dump(force=force)
-        for key in (
-            "version",
-            "sid",
-            "digest_algorithm",
-            "signed_attrs",
-            "signature_algorithm",
-            "signature",
-        )
-    ]
-    return b"".join(parts)
+    for key in ("version", "digest_algorithms", "encap_content_info", "certificates"):
+        yield signed[key].dump()
+    for key in (
+        "version",
+        "sid",
+        "digest_algorithm",
+        "signed_attrs",
+        "signature_algorithm",
+        "signature",
+    ):
+        yield signer[key].dump()
+
+
+def _is_der(part: bytes) -> bool:
+    """Whether lengths are definite and as short as can be, all the way down."""
+    place = 0
+    while place < len(part):
+        size = _length(part[place:])
+        if size is None or part[place] & 0x1F == 0x1F:
+            return False
+        head = 2 + (part[place + 1] & 0x7F if part[place + 1] > 0x7F else 0)
+        inside = part[place + head : place + size]
+        if part[place] & 0x20 and not _is_der(inside):
+            return False
+        place += size
+    return True
 
 
 def _length(padded: bytes) -> int | None:
     """Return the length of the DER object at the start; None if there is none."""
-    if len(padded) < 2 or padded[0] != 0x30:
+    if len(padded) < 2:
         return None
     first = padded[1]
     if first < 0x80:
-        return 2 + first
+        return 2 + first if 2 + first <= len(padded) else None
     size = first & 0x7F
     if not 1 <= size <= 4 or len(padded) < 2 + size or padded[2] == 0:
         return None

@@ -22,10 +22,10 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator
 from dataclasses import dataclass
-from hashlib import sha256
+from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
-from contingency.record.attachments import opened
+from contingency.record.attachments import all_objects, opened
 
 if TYPE_CHECKING:
     import pikepdf
@@ -33,7 +33,7 @@ if TYPE_CHECKING:
 Number = tuple[int, int]
 """Object and generation number."""
 
-_REFERENCE = re.compile(rb"(\d+) (\d+) R\b")
+_REFERENCE = re.compile(rb"(?<!\d)(\d{1,10}) (\d{1,5}) R\b")
 _LIBRARY_STREAMS = (b"/Type /XRef", b"/Type /ObjStm")
 
 _TRAILER_KEYS = frozenset({"/Root", "/Info", "/ID", "/Size", "/Prev"})
@@ -57,7 +57,7 @@ _HIDING_FLAGS = 1 | 2 | 32
 """Of an annotation: invisible, hidden, not shown (ISO 32000-1:2008, table 165)."""
 
 
-@dataclass(frozen=True, kw_only=True, slots=True)
+@dataclass(frozen=True, kw_only=True)
 class State:
     """All objects of a PDF as it stands at the end of one revision."""
 
@@ -66,6 +66,11 @@ class State:
     objects: dict[Number, bytes]
     """Each object as text, a stream with the digest of its bytes."""
     trailer_faults: tuple[str, ...]
+
+    @cached_property
+    def references(self) -> dict[Number, set[Number]]:
+        """For each object the objects that it refers to."""
+        return {number: _references(text) for number, text in self.objects.items()}
 
     @property
     def is_first(self) -> bool:
@@ -82,7 +87,7 @@ def state_of(pdf: bytes) -> State:
         unreadable-report.
     """
     document = opened(pdf)
-    objects = {thing.objgen: _text(thing) for thing in document.objects}
+    objects = dict(all_objects(document))
     odd = {*document.trailer.keys()} - _TRAILER_KEYS - _XREF_STREAM_KEYS
     return State(
         document=document,
@@ -123,8 +128,10 @@ def _changes(earlier: State, later: State) -> Iterator[str]:
     for number in sorted(old.keys() - new.keys()):
         yield f"object {number[0]} is gone"
     fresh = new.keys() - old.keys()
-    held_open = fresh & _references(earlier.document.trailer, *old.values())
-    for number in sorted(held_open):
+    held_open = _references(earlier.document.trailer).union(
+        *(earlier.references[number] for number in old)
+    )
+    for number in sorted(held_open & fresh):
         yield f"object {number[0]} was referred to before it was there"
 
     reached: set[Number] = set()
@@ -197,7 +204,7 @@ def _field_changes(
         or value.objgen not in fresh
         or value.get("/Type") != "/Sig"
         or not {*value.keys()} <= _SIGNATURE_KEYS
-        or _REFERENCE.search(_text(value))
+        or _REFERENCE.search(later.objects[value.objgen])
     ):
         yield f"{name} holds something that is no seal of ours"
     if (
@@ -238,7 +245,7 @@ def _reached(number: Number, later: State, fresh: set[Number]) -> set[Number]:
         one = waiting.pop()
         if one in fresh and one not in reached:
             reached.add(one)
-            waiting |= _references(later.objects[one])
+            waiting |= later.references[one]
     return reached
 
 
@@ -270,8 +277,10 @@ def _containers(state: State) -> set[Number]:
         for number, text in state.objects.items()
         if any(mark in text for mark in _LIBRARY_STREAMS) and b" stream " in text
     }
-    others = (text for number, text in state.objects.items() if number not in found)
-    return found - _references(state.document.trailer, *others)
+    if not found:
+        return found
+    others = (refs for number, refs in state.references.items() if number not in found)
+    return found - _references(state.document.trailer).union(*others)
 
 
 def _references(*things: Any) -> set[Number]:  # noqa: ANN401
@@ -317,18 +326,6 @@ def _reference(thing: Any) -> Number | None:  # noqa: ANN401
     if isinstance(thing, pikepdf.Object) and thing.is_indirect:
         return tuple(thing.objgen)  # type: ignore[return-value]  # two numbers
     return None
-
-
-def _text(thing: Any) -> bytes:  # noqa: ANN401
-    """Return an object itself as text; objects that it refers to by number only."""
-    import pikepdf
-
-    if isinstance(thing, pikepdf.Stream):
-        digest = sha256(thing.read_raw_bytes()).hexdigest().encode()
-        return pikepdf.Dictionary(dict(thing)).unparse() + b" stream " + digest
-    if isinstance(thing, pikepdf.Object):
-        return bytes(thing.unparse(resolved=True))
-    return repr(thing).encode()
 
 
 def _whole(thing: Any) -> bytes:  # noqa: ANN401

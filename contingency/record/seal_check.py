@@ -18,6 +18,7 @@ from dataclasses import asdict, dataclass
 from typing import TYPE_CHECKING, Any, cast
 
 from contingency.errors import UnreadableReport
+from contingency.record.attachments import refusing_the_unforeseen
 from contingency.record.cms_form import form_faults, signature_in
 from contingency.record.later_changes import (
     State,
@@ -94,6 +95,24 @@ def check_seals(
     UnreadableReport
         unreadable-report.
     """
+    with refusing_the_unforeseen():
+        return _checked(
+            pdf,
+            when=when,
+            trusted=trusted,
+            issued_bytes=issued_bytes,
+            second_word=second_word,
+        )
+
+
+def _checked(
+    pdf: bytes,
+    *,
+    when: dt.datetime,
+    trusted: Sequence[bytes],
+    issued_bytes: int | None,
+    second_word: bool,
+) -> SealsCheck:
     last = state_of(pdf)
     found = sorted(_found(last, pdf), key=lambda one: one.end)
     faults = [*_file_faults(pdf, last, found)]

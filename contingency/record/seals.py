@@ -17,12 +17,13 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
 from contingency.errors import AlreadySealed, NoSealField, NoTimeStamp
-from contingency.record.attachments import opened
+from contingency.record.attachments import opened, refusing_the_unforeseen
 from contingency.record.certificates import SigningCertificate
 from contingency.record.seal_look import draw_seal
 
 if TYPE_CHECKING:
     from pyhanko.pdf_utils.content import PdfContent
+    from pyhanko.sign.attributes import SignedAttributeProviderSpec
     from pyhanko.sign.signers import PdfSigner, SimpleSigner
     from pyhanko.sign.timestamps import TimeStamper
 
@@ -70,7 +71,7 @@ def seal_fields(pdf: bytes) -> tuple[SealField, ...]:
     """
     import pikepdf
 
-    with opened(pdf) as document:
+    with refusing_the_unforeseen(), opened(pdf) as document:
         form = document.Root.get("/AcroForm", pikepdf.Dictionary())
         pages = {page.objgen: i for i, page in enumerate(document.pages, start=1)}
         return tuple(
@@ -272,7 +273,46 @@ def _key_holder(certificate: SigningCertificate) -> SimpleSigner:
     holder: SimpleSigner = SimpleSigner.load_pkcs12_data(
         plain, other_certs=(), passphrase=None
     )
+    holder.signed_attr_prov_spec = _naming_all(holder)
     return holder
+
+
+def _naming_all(holder: SimpleSigner) -> SignedAttributeProviderSpec:
+    """Have the signature cover the digests of all certificates that it carries.
+
+    pyHanko names that of the signer only, and a changed byte in another one would
+    go unnoticed by whoever does not know it.  RFC 5035, section 5.4.1.1, allows all.
+    """
+    from asn1crypto import tsp
+    from pyhanko.sign.attributes import (
+        CMSAttributeProvider,
+    )
+    from pyhanko.sign.attributes import (
+        SignedAttributeProviderSpec as Specification,
+    )
+    from pyhanko.sign.general import as_signing_certificate_v2
+
+    carried = [holder.signing_cert, *holder.cert_registry]
+    carried = list({one.dump(): one for one in carried}.values())
+
+    class AllCertificates(CMSAttributeProvider):
+        attribute_type = "signing_certificate_v2"
+
+        async def build_attr_value(
+            self,
+            dry_run: bool = False,  # noqa: FBT001, FBT002, ARG002  (pyHanko's)
+        ) -> tsp.SigningCertificateV2:
+            named = [as_signing_certificate_v2(one)["certs"][0] for one in carried]
+            return tsp.SigningCertificateV2({"certs": named})
+
+    class NamingAll(Specification):
+        def signed_attr_providers(
+            self, data_digest: bytes, digest_algorithm: str
+        ) -> list[CMSAttributeProvider]:
+            del data_digest, digest_algorithm
+            return [AllCertificates()]
+
+    return NamingAll()
 
 
 def _drawing(look: bytes) -> PdfContent:
