@@ -145,7 +145,8 @@ def rank_coverage(low: int, high: int, n: int, p: float) -> float:
     Parameters
     ----------
     low, high : int
-        Ranks among `n` independent trials, counted from 1, low < high.
+        Ranks among `n` independent trials, counted from 1, low < high.  0 for `low`
+        leaves the lower side open.
     n : int
         Number of trials.
     p : float
@@ -156,7 +157,8 @@ def rank_coverage(low: int, high: int, n: int, p: float) -> float:
     >>> round(rank_coverage(17, 19, 35, 0.5), 6)
     0.264121
     """
-    return float(bdtr(high - 1, n, p) - bdtr(low - 1, n, p))
+    below = float(bdtr(low - 1, n, p)) if low > 0 else 0.0
+    return float(bdtr(high - 1, n, p)) - below
 
 
 def binomial_interval(
