@@ -12,6 +12,7 @@ import os
 import sys
 import traceback
 from collections.abc import Callable, Sequence
+from contextlib import AbstractContextManager, nullcontext
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -20,6 +21,7 @@ from contingency.version import VERSION
 
 if TYPE_CHECKING:
     from contingency.assurance.findings import CheckOutcome, Finding
+    from contingency.simulation.engine import BlockRunner
 
 DONE = 0
 """Done, and nothing needs attention."""
@@ -123,12 +125,10 @@ def _report(options: argparse.Namespace) -> int:
 
     estimate = read_estimate(options.estimate)
     progress = _progress_bar(options)
-    study = run_study(
-        estimate,
-        threads=options.threads,
-        progress=progress,
-        runner=_runner(options),
-    )
+    with _workers(options) as runner:
+        study = run_study(
+            estimate, threads=options.threads, progress=progress, runner=runner
+        )
     written = publish_report(
         study,
         options.out or Path(f"draft-{options.estimate.resolve().name}"),
@@ -221,13 +221,15 @@ def _progress_bar(options: argparse.Namespace) -> Callable[[int, int], None] | N
     return show
 
 
-def _runner(options: argparse.Namespace) -> Any:  # noqa: ANN401  (engine's BlockRunner)
-    """Return where the blocks run, or None for this process."""
+def _workers(
+    options: argparse.Namespace,
+) -> AbstractContextManager[BlockRunner | None]:
+    """Return where the blocks run: a cluster, or nothing for this process."""
     if not options.workers:
-        return None
-    from contingency.simulation.cluster import cluster_runner
+        return nullcontext()
+    from contingency.simulation.cluster import cluster
 
-    return cluster_runner(options.workers)
+    return cluster(options.workers)
 
 
 def _moment(options: argparse.Namespace) -> Any:  # noqa: ANN401  (a datetime)

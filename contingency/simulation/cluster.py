@@ -8,6 +8,7 @@ runs its blocks again elsewhere.
 from __future__ import annotations
 
 from collections.abc import Iterator
+from contextlib import ExitStack, contextmanager
 from typing import Any
 
 from threadpoolctl import threadpool_limits
@@ -19,10 +20,13 @@ from contingency.simulation.engine import BlockRunner
 
 HERE = "dask"
 """The word for a cluster of processes on this machine."""
+PATIENCE = "10s"
+"""How long to wait for a scheduler's answer."""
 
 
-def cluster_runner(place: str) -> BlockRunner:
-    """Return a runner that sends blocks to a Dask cluster.
+@contextmanager
+def cluster(place: str) -> Iterator[BlockRunner]:
+    """Connect to a Dask cluster; yield a runner that sends blocks to it.
 
     Parameters
     ----------
@@ -34,7 +38,12 @@ def cluster_runner(place: str) -> BlockRunner:
     ClusterUnavailable
         cluster-unavailable.  Dask is not installed, or no scheduler answers.
     """
-    client = _client(place)
+    with _client(place) as client:
+        yield runner_on(client)
+
+
+def runner_on(client: Any) -> BlockRunner:  # noqa: ANN401  (distributed has no types)
+    """Return a runner that sends blocks through a connected Dask client."""
 
     def run(model: CostModel, centre: float, blocks: range) -> Iterator[BlockSums]:
         remote = client.scatter(model, broadcast=True)
@@ -56,7 +65,9 @@ def _one_block(model: CostModel, block: int, centre: float) -> BlockSums:
         return run_block(model, block, Workspace(model), centre)
 
 
-def _client(place: str) -> Any:  # noqa: ANN401  (distributed ships no types)
+@contextmanager
+def _client(place: str) -> Iterator[Any]:
+    """Connect to a scheduler, or start workers here; close what was opened."""
     try:
         import distributed
     except ImportError as error:
@@ -68,14 +79,19 @@ def _client(place: str) -> Any:  # noqa: ANN401  (distributed ships no types)
         ) from error
     connect: Any = distributed.Client
     start: Any = distributed.LocalCluster
-    try:
-        if place == HERE:
-            return connect(start(threads_per_worker=1, dashboard_address=None))
-        return connect(place, timeout=10)
-    except (OSError, TimeoutError, ValueError) as error:
-        raise ClusterUnavailable(
-            where=f"--workers {place}",
-            found=f"{error}.",
-            rule=f"PLACE is `{HERE}` or the address of a running scheduler.",
-            remedy="Start a scheduler with `dask scheduler` and give its address.",
-        ) from error
+    with ExitStack() as opened:
+        try:
+            address: Any = place
+            if place == HERE:
+                address = opened.enter_context(
+                    start(threads_per_worker=1, dashboard_address=None)
+                )
+            client = opened.enter_context(connect(address, timeout=PATIENCE))
+        except (OSError, TimeoutError, ValueError) as error:
+            raise ClusterUnavailable(
+                where=f"--workers {place}",
+                found=f"{error}.",
+                rule=f"PLACE is `{HERE}` or the address of a running scheduler.",
+                remedy="Start a scheduler with `dask scheduler` and give its address.",
+            ) from error
+        yield client
