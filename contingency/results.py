@@ -9,8 +9,10 @@ import json
 from collections.abc import Sequence
 from typing import Any
 
+from contingency.assurance.evidence import evidence_score
 from contingency.assurance.findings import CheckOutcome, Finding
 from contingency.assurance.material import Material
+from contingency.assurance.robustness import Robustness
 from contingency.setting.allocation import Split
 from contingency.setting.levels import FundingLevel
 from contingency.version import VERSION
@@ -76,6 +78,8 @@ def results_of(
             for check in checks_run
         ],
         "funding": None,
+        "evidence": _evidence(study),
+        "robustness": _robustness(study.robustness),
     }
 
 
@@ -192,6 +196,62 @@ def _cross_check(study: Material) -> dict[str, Any]:
             for level in check.levels
         ],
         "passed": check.passed,
+    }
+
+
+def _evidence(study: Material) -> dict[str, float] | None:
+    """Return the fractions of the variance by what backs them."""
+    score = evidence_score(study)
+    if score is None:
+        return None
+    return {
+        "data": figure(score.data),
+        "analogue": figure(score.analogue),
+        "judgement": figure(score.judgement),
+        "nothing": figure(score.nothing),
+    }
+
+
+def _robustness(rested: Robustness | None) -> dict[str, Any] | None:
+    """Return what the contingency at the target rests on."""
+    if rested is None:
+        return None
+    return {
+        "trials": rested.trials,
+        "what_if": [
+            {
+                "slug": one.slug,
+                "title": one.title,
+                "contingency": None
+                if one.contingency is None
+                else figure(one.contingency),
+                "effect": figure(one.effect),
+                "half_width": figure(one.half_width),
+                "reason": one.reason,
+            }
+            for one in rested.what_ifs
+        ],
+        "seeds": {
+            "trials": rested.seeds.trials,
+            "contingencies": [figure(c) for c in rested.seeds.contingencies],
+            "below_issued": rested.seeds.below,
+        },
+        "break_level": f"P{rested.break_percent:02d}",
+        "break_points": [
+            {
+                "id": point.id,
+                "name": point.name,
+                "kind": point.kind,
+                "quantity": point.quantity,
+                "now": figure(point.now),
+                "breaks_at": None
+                if point.breaks_at is None
+                else figure(point.breaks_at),
+                "furthest": figure(point.furthest),
+                "level_there": point.level_there,
+            }
+            for point in rested.break_points
+        ],
     }
 
 

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, fields
+from dataclasses import dataclass, fields, replace
 from typing import TYPE_CHECKING, Any
 
 from contingency.assurance.findings import CheckOutcome, Finding
 from contingency.assurance.material import Material
+from contingency.assurance.robustness import what_it_rests_on
 from contingency.assurance.run import run_checks
 from contingency.estimate.nouns import Estimate, Level
 from contingency.results import results_of
@@ -111,6 +112,7 @@ def run_study(
         estimate, threads=threads, progress=progress, runner=runner, model=model
     )
     material = _material(estimate, simulation, exact_moments(model))
+    material = replace(material, robustness=what_it_rests_on(material))
     findings, checks_run = run_checks(material)
     known = {f.name: getattr(material, f.name) for f in fields(material)}
     return Study(**known, findings=findings, checks_run=checks_run)
