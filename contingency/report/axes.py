@@ -88,7 +88,9 @@ def money_axis(
     for amount, word in zip(amounts, words, strict=True):
         x = scale(amount)
         canvas.line((x, y), (x, y + 2.5), colours.rule)
-        canvas.text((x, y + 10), word, size=SMALL, colour=colours.muted, align="middle")
+        width = canvas.letters.width(word, SMALL)
+        left = min(max(x - width / 2, 0.0), canvas.width - width)
+        canvas.text((left, y + 10), word, size=SMALL, colour=colours.muted)
     canvas.text(
         (scale.right, y + 20), title, size=SMALL, colour=colours.muted, align="end"
     )

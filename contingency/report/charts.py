@@ -48,7 +48,7 @@ KINDS = {
 }
 """Kinds of drivers in words."""
 
-MOST_DRIVERS = 15
+MOST_DRIVERS = 12
 """Bars of a driver chart; the table beside it lists all."""
 MOST_CAUSES = 6
 MOST_LINES = 46
@@ -66,12 +66,12 @@ class Chart:
     drawing: Drawing
 
 
-def total_charts(study: Study, look: Look) -> list[Chart]:
+def total_charts(study: Study, printed: PrintedFigures, look: Look) -> list[Chart]:
     """Return the cumulative curve and the density."""
-    unit = chart_unit(max(abs(study.percentiles[-1]), abs(study.estimate.base)))
+    unit = _total_unit(study, printed)
     axis_title = f"Total cost, {unit.caption(study.estimate.currency)}"
-    marks = _marks(study)
-    p10, p90 = study.percentiles[9], study.percentiles[89]
+    marks = _marks(study, printed)
+    p10, p90 = (printed.percentiles[i].total for i in (9, 89))
     middle_words = (
         f"P10 to P90: {in_unit(p10, unit)} to {in_unit(p90, unit)}, "
         "eight outcomes in ten"
@@ -94,7 +94,7 @@ def total_charts(study: Study, look: Look) -> list[Chart]:
     density = Chart(
         name="density",
         alt=f"Density of the total cost, in {unit.caption(_code(study))}, filled up to "
-        f"{target.name} at {in_unit(target.total, unit)}. {middle_words}.",
+        f"{target.name} at {in_unit(printed.request, unit)}. {middle_words}.",
         drawing=density_chart(
             histogram(study.simulation.total),
             marks,
@@ -112,19 +112,24 @@ def _code(study: Study) -> str:
     return study.estimate.currency
 
 
-def _marks(study: Study) -> tuple[Mark, ...]:
+def _total_unit(study: Study, printed: PrintedFigures) -> MoneyUnit:
+    largest = max(abs(study.percentiles[-1]), abs(study.estimate.base))
+    return chart_unit(largest, printed.step)
+
+
+def _marks(study: Study, printed: PrintedFigures) -> tuple[Mark, ...]:
     """Return base, mean and funded levels, cheapest first."""
     mean_holds = chance_of_holding(study.simulation.total, study.mean)
     base = Mark(
         name="Base",
         words=f"enough with {chance(study.chance_base_is_enough)}",
-        amount=study.estimate.base,
+        amount=printed.total.base,
         chance=study.chance_base_is_enough,
     )
     mean = Mark(
         name="Mean",
         words=f"average of all outcomes, {chance(mean_holds)}",
-        amount=study.mean,
+        amount=printed.mean,
         chance=mean_holds,
     )
     levels = {lv.percent: lv for lv in (*study.levels, study.target)}.values()
@@ -135,7 +140,7 @@ def _marks(study: Study) -> tuple[Mark, ...]:
             Mark(
                 name=lv.name,
                 words=", ".join(word for word in (lv.purpose, lv.holder) if word),
-                amount=lv.total,
+                amount=printed.percentiles[lv.percent - 1].total,
                 chance=lv.percent / 100,
                 is_target=lv.percent == study.target.percent,
             )
@@ -237,17 +242,19 @@ def _row_name(study: Study, row: int) -> str:
     return f"{line.package}{SPACE}{SPACE}{line.name}" if is_package else line.name
 
 
-def driver_charts(study: Study, amounts: Amounts, look: Look) -> list[Chart]:
+def driver_charts(
+    study: Study, printed: PrintedFigures, amounts: Amounts, look: Look
+) -> list[Chart]:
     """Return swing and effect on the target; none if nothing varies."""
     inputs = [d for d in study.drivers if d.kind != "cause"]
     causes = [d for d in study.drivers if d.kind == "cause"][:MOST_CAUSES]
     if not inputs:
         return []
-    unit = chart_unit(max(abs(study.percentiles[-1]), abs(study.estimate.base)))
+    unit = _total_unit(study, printed)
     by_swing = sorted(inputs, key=lambda d: -abs(d.swing[1] - d.swing[0]))
     by_effect = sorted(inputs, key=lambda d: -abs(d.removal_effect))
     by_swing, by_effect = by_swing[:MOST_DRIVERS], by_effect[:MOST_DRIVERS]
-    mean = f"Mean total {in_unit(study.mean, unit)} {unit.word}".strip()
+    mean = f"Mean total {in_unit(printed.mean, unit)} {unit.word}".strip()
     return [
         Chart(
             name="swing",

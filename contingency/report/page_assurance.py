@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from hashlib import sha256
 
 from contingency.assurance.findings import Finding
+from contingency.assurance.settings import GRADES
 from contingency.estimate.nouns import Answer
 from contingency.report.wording import (
     NOTHING,
@@ -15,6 +16,7 @@ from contingency.report.wording import (
     date,
     grouped_fingerprint,
     plural,
+    sentence,
 )
 from contingency.simulation.cross_check import MomentCheck
 from contingency.study import Study
@@ -196,13 +198,20 @@ def assurance_page(study: Study) -> AssurancePage:
         checks=tuple(
             CheckRow(
                 title=check.title,
-                threshold=check.threshold or NOTHING,
+                threshold=_grades_short(check.threshold) or NOTHING,
                 outcome=OUTCOMES[check.outcome],
                 reason=check.reason,
             )
             for check in study.checks_run
         ),
     )
+
+
+def _grades_short(threshold: str) -> str:
+    """Return a threshold with its grades as letters; the page explains them once."""
+    for grade, words in GRADES.items():
+        threshold = threshold.replace(f"({grade}: {words})", f"({grade})")
+    return sentence(threshold)
 
 
 def _summary(study: Study) -> str:
@@ -230,7 +239,7 @@ def _finding(finding: Finding, title: str) -> FindingBlock:
         severity=finding.severity.capitalize(),
         title=title,
         where=finding.where,
-        message=finding.message,
+        message=sentence(finding.message),
         todo=finding.todo,
         source=finding.source,
         answers=tuple(_answer(answer) for answer in answers),
@@ -256,7 +265,7 @@ def cautions_page(study: Study) -> CautionsPage:
     return CautionsPage(
         stated=study.estimate.statements.cautions,
         found=tuple(
-            finding.message
+            sentence(finding.message)
             for finding in study.findings
             if finding.severity == "caution"
         ),

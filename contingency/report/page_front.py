@@ -170,7 +170,7 @@ def title_page(study: Study, *, draft: bool, issued_on: str, tool: str) -> Title
 
 
 def _class_words(estimate_class: int | None) -> str:
-    return NOTHING if estimate_class is None else f"{estimate_class} of 5 to 1"
+    return NOTHING if estimate_class is None else f"Class {estimate_class}"
 
 
 def sign_off_rows(lines: tuple[SignOffLine, ...]) -> tuple[SignOffRow, ...]:
@@ -223,7 +223,7 @@ def answer_page(
 ) -> AnswerPage:
     """Return the answer; long texts are cut so that it stays on one page."""
     target, rule = study.target, study.estimate.contingency
-    p10, p90 = study.percentiles[9], study.percentiles[89]
+    p10, p90 = (printed.percentiles[i].total for i in (9, 89))
     inputs = [d for d in study.drivers if d.kind != "cause"]
     return AnswerPage(
         contingency=amounts.full(printed.total.contingency),
@@ -231,7 +231,7 @@ def answer_page(
         base=amounts.full(printed.total.base),
         level=target.name,
         chance_words=f"{target.percent}{SPACE}%",
-        set_by=clipped(rule.set_by, 150) or "No authority is recorded",
+        set_by=clipped(rule.set_by, 150).rstrip(".") or "No authority is recorded",
         reason=sentence(clipped(rule.reason, 220)),
         percent_of_base=percent(target.percent_of_base / 100, 1),
         base_is_enough=chance(study.chance_base_is_enough),
@@ -251,7 +251,7 @@ def answer_page(
 
 def _top_driver(driver: Driver, amounts: Amounts) -> TopDriver:
     return TopDriver(
-        name=f"{driver.id}{SPACE}{SPACE}{clipped(driver.name, 46)}",
+        name=f"{driver.id}{SPACE}{SPACE}{clipped(driver.name, 62)}",
         kind=KINDS[driver.kind],
         share=percent(driver.variance_share),
         effect=amounts.cell(driver.removal_effect),
@@ -269,7 +269,7 @@ def _worst_cautions(study: Study) -> tuple[AnswerCaution, ...]:
         AnswerCaution(
             mark=finding.severity.capitalize()
             + (", answered" if finding.is_answered else ""),
-            words=clipped(finding.message, 210),
+            words=sentence(clipped(finding.message, 210)),
         )
         for finding in order
     ]

@@ -16,6 +16,7 @@ from contingency.estimate.nouns import (
     WorkPackage,
 )
 from contingency.report.wording import (
+    DASH,
     NOTHING,
     SPACE,
     Amounts,
@@ -28,7 +29,7 @@ from contingency.report.wording import (
     probability,
     sentence,
 )
-from contingency.setting.printed import PrintedFigures, PrintedLine
+from contingency.setting.printed import PrintedFigures
 from contingency.study import Study
 
 KIND_WORDS = {"data": "data", "analogue": "analogue", "judgement": "judgement"}
@@ -299,15 +300,13 @@ def base_page(study: Study, printed: PrintedFigures, amounts: Amounts) -> BasePa
     )
 
 
-def inputs_page(study: Study, printed: PrintedFigures, amounts: Amounts) -> InputsPage:
-    """Return every input with its evidence."""
+def inputs_page(study: Study, *, step: float) -> InputsPage:
+    """Return every input with its evidence, as exactly as it was entered."""
     estimate = study.estimate
-    bases = dict(
-        zip((row.package for row in study.allocation.rows), printed.rows, strict=True)
-    )
+    amounts = Amounts(currency=estimate.currency, step=entered_step(estimate, step))
     groups: dict[str, list[PackageRow]] = {}
     for package in estimate.packages:
-        row = _package_row(package, bases[package.id], amounts)
+        row = _package_row(package, amounts)
         groups.setdefault(package.group, []).append(row)
     general = estimate.general_dependence
     average = study.implied_average_correlation
@@ -343,10 +342,32 @@ def inputs_page(study: Study, printed: PrintedFigures, amounts: Amounts) -> Inpu
     )
 
 
+def entered_step(estimate: Estimate, step: float) -> float:
+    """Return the largest step, at most `step`, that shows what was entered exactly.
+
+    Amounts written in percent are not looked at: they are rounded, and the table
+    shows the percentages beside them.
+    """
+    amounts = [package.base for package in estimate.packages]
+    amounts += [p.spent for p in estimate.packages if p.spent is not None]
+    costs = [package.cost for package in estimate.packages]
+    costs += [e.impact for e in estimate.events if e.impact]
+    costs += [e.after_impact for e in estimate.events if e.after_impact]
+    for cost in costs:
+        ends = zip((cost.low, cost.likely, cost.high), cost.written, strict=False)
+        amounts += [x for x, cell in ends if x is not None and cell and "%" not in cell]
+    for power in (1000.0, 100.0, 10.0, 1.0, 0.1):
+        if power <= step and all(
+            abs(x / power - round(x / power)) < 1e-6 for x in amounts
+        ):
+            return power
+    return min(step, 0.01)
+
+
 def _ends_words(estimate: Estimate) -> str:
     if estimate.ends is None:
         return "not stated; rows without their own words are read as limits"
-    return "limits" if estimate.ends.are_limits else str(estimate.ends)
+    return _dashed(str(estimate.ends))
 
 
 def _followers(estimate: Estimate, cause: str) -> str:
@@ -358,15 +379,13 @@ def _followers(estimate: Estimate, cause: str) -> str:
     )
 
 
-def _package_row(
-    package: WorkPackage, printed: PrintedLine, amounts: Amounts
-) -> PackageRow:
+def _package_row(package: WorkPackage, amounts: Amounts) -> PackageRow:
     cost = package.cost
     low, likely, high = _money_ends(cost, amounts)
     return PackageRow(
         id=package.id,
         name=package.name,
-        base=amounts.cell(printed.base),
+        base=amounts.cell(package.base),
         low=low,
         likely=likely,
         high=high,
@@ -424,7 +443,11 @@ def _money_ends(cost: CostRange, amounts: Amounts) -> tuple[str, str, str]:
 def _ends(cost: CostRange) -> str:
     if cost.shape in (ShapeName.FIXED, ShapeName.DISCRETE, ShapeName.POINTS):
         return NOTHING
-    return str(cost.ends).replace("-", "–")
+    return _dashed(str(cost.ends))
+
+
+def _dashed(ends: str) -> str:
+    return ends.replace("-", DASH)
 
 
 def evidence_words(evidence: Evidence) -> str:

@@ -128,6 +128,8 @@ class AllocationPage:
     picture: Picture
     picture_note: str
     has_project_wide: bool
+    is_wide: bool
+    """Whether the amounts are too long for an upright page."""
     has_negative: bool
 
 
@@ -318,6 +320,7 @@ def allocation_page(
             else None
         )
         groups.append(AllocationGroup(rows=rows, subtotal=subtotal))
+    longest = max(len(amounts.cell(x)) for x in (printed.request, printed.total.base))
     return AllocationPage(
         unit=amounts.caption,
         level=study.target.name,
@@ -328,6 +331,7 @@ def allocation_page(
         picture=picture(chart),
         picture_note=picture_note,
         has_project_wide=any(r.package == PROJECT_WIDE for r in allocation.rows),
+        is_wide=longest > 8,
         has_negative=any(row.contingency < 0 for row in printed.rows),
     )
 

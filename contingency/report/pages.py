@@ -135,10 +135,10 @@ def make_pages(
     charts: dict[str, Chart] = {
         chart.name: chart
         for chart in (
-            *total_charts(study, look),
+            *total_charts(study, printed, look),
             composition(printed, amounts, look),
             picture,
-            *driver_charts(study, amounts, look),
+            *driver_charts(study, printed, amounts, look),
         )
     }
     moment = created.astimezone(dt.UTC)
@@ -160,7 +160,7 @@ def make_pages(
         scope=scope_page(estimate),
         base=base_page(study, printed, amounts),
         method=method_page(study),
-        inputs=inputs_page(study, printed, amounts),
+        inputs=inputs_page(study, step=step),
         result=result_page(study, printed, amounts, charts),
         split=split_page(study, printed, amounts),
         allocation=allocation_page(study, printed, amounts, picture, note),

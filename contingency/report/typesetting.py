@@ -143,9 +143,12 @@ def set_pages(
         style_sheet, fonts = _style_sheet(engine, shelf)
         check_fonts(frozenset(shelf.fonts))
         options: dict[str, Any] = {"pdf_variant": VARIANT, "stylesheets": [style_sheet]}
-        document = engine.HTML(
-            string=html, base_url=None, url_fetcher=_fetcher(shelf)
-        ).render(font_config=fonts, **options)
+        document = _laid_out(
+            engine.HTML(string=html, url_fetcher=_fetcher(shelf)),
+            fonts,
+            options,
+            engine,
+        )
         _claim_ua(document)
         stamp = created.astimezone(dt.UTC)
         pdf = document.write_pdf(
@@ -188,6 +191,26 @@ def _no_engine(found: str) -> NoTextEngine:
         rule="Text is set with Pango and HarfBuzz, which the system must have.",
         remedy="On Debian: apt-get install -y libpangoft2-1.0-0 libharfbuzz-subset0",
     )
+
+
+LET_GO = (
+    "*, *::before { break-inside: auto !important; break-after: auto !important }"
+    "tr, tbody { break-before: auto !important }"
+)
+"""Style that keeps nothing together, for a text that no page can hold in one piece."""
+
+
+def _laid_out(source: Any, fonts: Any, options: dict[str, Any], engine: Any) -> Any:  # noqa: ANN401
+    """Return the pages; where rows are longer than a page, nothing is kept together.
+
+    WeasyPrint gives up by an assertion when something that must not be broken fits on
+    no page.
+    """
+    try:
+        return source.render(font_config=fonts, **options)
+    except AssertionError:
+        sheets = [*options["stylesheets"], engine.CSS(string=LET_GO)]
+        return source.render(font_config=fonts, **{**options, "stylesheets": sheets})
 
 
 def _style_sheet(engine: Any, shelf: Shelf) -> tuple[Any, Any]:  # noqa: ANN401

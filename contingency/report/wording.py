@@ -75,17 +75,18 @@ def table_unit(step: float) -> MoneyUnit:
     return MoneyUnit(size=1.0, digits=decimals(step), word="")
 
 
-def chart_unit(largest: float) -> MoneyUnit:
-    """Return the unit for a chart whose largest amount is `largest`, 3 to 4 figures.
+def chart_unit(largest: float, step: float) -> MoneyUnit:
+    """Return the unit for a chart: 3 to 4 figures, but none finer than `step`.
 
-    >>> chart_unit(141_784_000), chart_unit(9_400).word
+    >>> chart_unit(141_784_000, 1000), chart_unit(9_400, 1).word
     (MoneyUnit(size=1000000.0, digits=1, word='million'), 'thousand')
     """
     for size, word in ((1e9, "billion"), (1e6, "million"), (1e3, "thousand")):
         if largest >= 2 * size:
             digits = 2 if largest < 20 * size else 1 if largest < 1000 * size else 0
+            digits = min(digits, decimals(min(step / size, 1.0)))
             return MoneyUnit(size=size, digits=digits, word=word)
-    return MoneyUnit(size=1.0, digits=0 if largest >= 100 else 2, word="")
+    return MoneyUnit(size=1.0, digits=decimals(min(step, 1.0)), word="")
 
 
 def fixed(number: float, digits: int = 0) -> str:
@@ -157,13 +158,15 @@ class Amounts:
         return self.unit.caption(self.currency)
 
     def cell(self, amount: float) -> str:
-        """Return an amount as a table shows it."""
-        return in_unit(amount, self.unit)
+        """Return an amount as a table shows it, to the nearest step."""
+        return in_unit(self._rounded(amount), self.unit)
 
     def full(self, amount: float) -> str:
         """Return an amount as a sentence shows it: EUR 21,384,000."""
-        rounded = round(amount / self.step) * self.step
-        return currency_amount(self.currency, rounded, step=self.step)
+        return currency_amount(self.currency, self._rounded(amount), step=self.step)
+
+    def _rounded(self, amount: float) -> float:
+        return round(amount / self.step) * self.step
 
 
 def percent(fraction: float, digits: int = 0) -> str:
