@@ -88,7 +88,9 @@ def test_scores_beyond_the_grid_stay_within_the_range():
     assert out[:, 1] == pytest.approx(
         [float(TABLED[f"pert {m}"].at_score(10.0)) for m in (0.1, 0.5)], abs=1e-7
     )
-    assert out[:, 2] == pytest.approx([TABLED["pert 0.1"].quantile(0.5), 0.5], abs=1e-6)
+    assert out[:, 2] == pytest.approx(
+        [float(TABLED["pert 0.1"].quantile(0.5)), 0.5], abs=1e-6
+    )
 
 
 def test_a_mixture_reads_each_curve_in_its_place():
