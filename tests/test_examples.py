@@ -208,6 +208,8 @@ def test_files_of_evidence_travel_with_the_estimate(large):
         "systemic.csv",
         "events.csv",
         "causes.csv",
+        "changes.csv",
+        "drawdown.csv",
         "cable-quotes.csv",
         "closed-links.csv",
         "south-landfall-boreholes.csv",
@@ -248,6 +250,38 @@ def test_the_story_of_the_larger_example_is_in_its_files():
     assert event(c, "E04").use == "after"
     # The level changed, alone and last.
     assert [e.contingency.target for e in (a, b, c)] == [75, 75, 80]
+
+
+def test_every_change_of_base_has_a_family_and_a_reason():
+    """And every row that is new, closed or occurred has a reason."""
+    for example, pair in (("island-power-link", "ab"), ("island-power-link", "bc")):
+        old, new = (read_estimate(EXAMPLES / example / f"rev-{x}") for x in pair)
+        said = {(change.file, change.id): change for change in new.changes}
+        for one in new.packages:
+            before = old.find_package(one.id)
+            if before is None or before.base != one.base:
+                assert said["packages", one.id].family, one.id
+        status = {one.id: one.status for one in old.events}
+        for one in new.events:
+            if status.get(one.id) != one.status:
+                assert said["events", one.id].reason, one.id
+
+
+def test_the_account_of_the_larger_example_explains_the_base():
+    """What left the account is in the base: funding in all stayed the same."""
+    b, c = (read_estimate(LARGE / f"rev-{letter}") for letter in "bc")
+    signs = {"opening": 1, "added": 1, "drawn": -1, "released": -1}
+    opening = sum(one.amount for one in c.account if one.kind == "opening")
+    left = sum(signs[one.kind] * one.amount for one in c.account)
+
+    assert left == 40_640_000
+    assert c.base + left == b.base + opening
+    for one in c.account:
+        assert one.reason
+        assert one.approved_by
+        if one.kind != "opening":
+            moved = package(c, one.package).base - package(b, one.package).base
+            assert moved == -signs[one.kind] * one.amount, one.label
 
 
 def relative_spread(one):
