@@ -17,7 +17,7 @@ import pytest
 
 ROOT = Path(__file__).parents[1]
 LESSON = ROOT / "docs" / "first-report.md"
-EXAMPLE = ROOT / "example_estimates" / "buoy-tender-refit" / "rev-b"
+EXAMPLE = ROOT / "example_estimates" / "buoy-tender-refit" / "rev-a"
 BLOCK = re.compile(r"^```(\w+)\n(.*?)^```$", re.MULTILINE | re.DOTALL)
 
 
