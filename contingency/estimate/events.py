@@ -174,7 +174,7 @@ def _chance(row: Row, prefix: str) -> dict[str, float | None]:
             row.refuse(name, Problem(HappensMismatch, found, remedy))
     return {
         f"{prefix}probability": row.probability(f"{prefix}probability"),
-        f"{prefix}frequency": row.count(f"{prefix}frequency"),
+        f"{prefix}frequency": row.frequency(f"{prefix}frequency"),
     }
 
 

@@ -475,6 +475,13 @@ class ProbabilityOutOfRange(Fault):
     law = "A probability lies between 0 and 1, or between 0% and 100%."
 
 
+class FrequencyTooLarge(Fault):
+    """An event that is expected to come thousands of times."""
+
+    slug = "frequency-too-large"
+    law = "A frequency is at most 1,000: what comes more often is cost, not risk."
+
+
 class ShareOutOfRange(Fault):
     """A share below 0 or above 100 %."""
 

@@ -23,6 +23,7 @@ from contingency.estimate.faults import (
     AmountNegative,
     CellBlank,
     DatesReversed,
+    FrequencyTooLarge,
     IdReserved,
     IdTwice,
     IdUnusable,
@@ -30,6 +31,10 @@ from contingency.estimate.faults import (
 from contingency.estimate.nouns import PROJECT_WIDE
 
 Value = TypeVar("Value")
+
+MOST_OCCURRENCES = 1_000
+"""Occurrences of one event that may be expected.  A choice of ours: a Poisson number
+with that mean varies by some 3 % (1/√1000), less than what a range says anyway."""
 
 RESERVED = (PROJECT_WIDE, "all")
 """Words that stand for several packages and can be the id of none."""
@@ -97,14 +102,21 @@ class Row:
         text = self.cell(column)
         return self.accept(column, read_number(text, signed=True)) if text else None
 
-    def count(self, column: str) -> float | None:
-        """Return a plain number that is not negative."""
+    def frequency(self, column: str) -> float | None:
+        """Return an expected number of occurrences, 0 to 1,000."""
         value = self.number(column)
         if value is not None and value < 0:
             found = f"{shown(self.cell(column))} is negative."
             rule = "A number of occurrences is not negative."
             problem = Problem(AmountNegative, found, "Correct the number.", rule)
             self.refuse(column, problem)
+            return None
+        if value is not None and value > MOST_OCCURRENCES:
+            found = f"{shown(self.cell(column))} occurrences are expected."
+            remedy = (
+                "Put the cost into a package's base, and its spread into its range."
+            )
+            self.refuse(column, Problem(FrequencyTooLarge, found, remedy))
             return None
         return None if value is None else float(value)
 

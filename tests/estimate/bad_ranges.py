@@ -353,6 +353,15 @@ RANGES = (
         ),
     ),
     bad(
+        "frequency_of_thousands",
+        event("E1", frequency="20000"),
+        (
+            "events.csv:2, event E1 Storm on the hill, frequency",
+            "frequency-too-large",
+            '"20000" occurrences are expected.',
+        ),
+    ),
+    bad(
         "frequency_in_percent",
         event("E1", frequency="150%"),
         (
