@@ -17,6 +17,7 @@ FILE_ORDER = (
     "correlations.csv",
     "changes.csv",
     "drawdown.csv",
+    "history.csv",
 )
 """The files that are interpreted, in the order in which their faults are listed."""
 

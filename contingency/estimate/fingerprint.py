@@ -20,6 +20,7 @@ _IN_LISTS = {
     "causes": "id",
     "loads": "cause",
     "shares": "package",
+    "history": "id",
 }
 """Lists whose order says nothing, and the field that they are sorted by."""
 _IN_SETS = ("applies_to", "excludes", "packages")

@@ -461,6 +461,60 @@ class AccountRule(Noun):
     delegations: tuple[Delegation, ...] = ()
 
 
+class ClosedProject(Noun):
+    """One line of history.csv: a project that is finished, like this one."""
+
+    id: str
+    name: str = ""
+    group: str = ""
+    estimate: float
+    """Base estimate at the same gate, any money."""
+    final: float
+    """Final cost, in the same money as `estimate`."""
+    notes: str = ""
+    line: int
+
+    @property
+    def ratio(self) -> float:
+        """Final cost over estimate."""
+        return self.final / self.estimate
+
+
+class UpliftPart(Noun):
+    """One kind of work in a published percentage uplift."""
+
+    kind: str
+    share: float
+    """Fraction of the base that is of this kind."""
+    upper: float
+    """Published uplift of this kind before risks are managed, fraction of the base."""
+    managed: float = 0.0
+    """Fraction of the uplift that managed risks take away."""
+
+
+class OutsideRule(Noun):
+    """What [outside_view] of estimate.toml says about the projects compared with."""
+
+    stage: str = ""
+    """How it is ensured that estimates are of the same stage as this one."""
+    money: str = ""
+    """How it is ensured that estimate and final cost are in the same money."""
+    scope: str = ""
+    """How it is ensured that estimate and final cost have the same scope."""
+    group: str = ""
+    """The group of history.csv to compare with; blank for all of it."""
+    source: str = ""
+    """Where the percentiles or the uplifts come from."""
+    percentiles: tuple[tuple[int, float], ...] = ()
+    """(whole percent not exceeded, final cost over base less 1), rising."""
+    uplifts: tuple[UpliftPart, ...] = ()
+
+    @property
+    def is_comparable(self) -> bool:
+        """Whether stage, money and scope are all declared."""
+        return bool(self.stage and self.money and self.scope)
+
+
 class Estimate(Noun):
     """One revision of one estimate, as read from its folder."""
 
@@ -503,6 +557,10 @@ class Estimate(Noun):
     account: tuple[AccountEntry, ...] = ()
     """The contingency account to date, from drawdown.csv, by date."""
     account_rule: AccountRule = AccountRule()
+
+    history: tuple[ClosedProject, ...] = ()
+    """Closed projects, from history.csv."""
+    outside_rule: OutsideRule = OutsideRule()
 
     sources: tuple[SourceFile, ...] = ()
     """Every file that was read, byte for byte; sorted by name."""

@@ -15,6 +15,7 @@ from contingency.estimate import account as drawdown_csv
 from contingency.estimate import causes as causes_csv
 from contingency.estimate import changes as changes_csv
 from contingency.estimate import events as events_csv
+from contingency.estimate import history as history_csv
 from contingency.estimate import packages as packages_csv
 from contingency.estimate import systemic as systemic_csv
 from contingency.estimate.fault_list import FaultList
@@ -35,6 +36,7 @@ LAYOUTS = (
     causes_csv.CORRELATIONS,
     changes_csv.LAYOUT,
     drawdown_csv.LAYOUT,
+    history_csv.LAYOUT,
 )
 """The tables of an estimate folder, in the order of docs/inputs.md."""
 
@@ -113,6 +115,8 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
     account = (
         drawdown_csv.read_account(table, tables["events.csv"], known) if table else ()
     )
+    table = tables["history.csv"]
+    history = history_csv.read_history(table) if table else ()
     for name in CARRIED:
         if folder.has(name):
             folder.carry(name)
@@ -137,6 +141,8 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
         changes=changes,
         account=account,
         account_rule=settings.account_rule,
+        history=history,
+        outside_rule=settings.outside_rule,
         sources=folder.sources,
     )
 

@@ -33,6 +33,7 @@ from contingency.estimate.faults import (
     TrialsNotInBlocks,
     TrialsOutOfOrder,
 )
+from contingency.estimate.history import OUTSIDE_KEYS, read_outside_rule
 from contingency.estimate.nouns import (
     AccountRule,
     Answer,
@@ -41,6 +42,7 @@ from contingency.estimate.nouns import (
     Ends,
     Exclusion,
     Level,
+    OutsideRule,
     Run,
     SignOffLine,
     Statements,
@@ -84,6 +86,7 @@ KEYS: dict[str, tuple[str, ...]] = {
     "sign_off": ("role", "name", "position"),
     "answers": ("check", "where", "answer", "by", "on"),
     **ACCOUNT_KEYS,
+    **OUTSIDE_KEYS,
 }
 """The keys under each heading of estimate.toml, in the order of docs/inputs.md.
 [assurance] takes the names of thresholds, which the assurance room knows."""
@@ -122,6 +125,7 @@ class Settings:
     answers: tuple[Answer, ...]
     assurance: dict[str, float | int | str | bool]
     account_rule: AccountRule
+    outside_rule: OutsideRule
 
 
 def read_settings(text: str, faults: FaultList) -> Settings | None:
@@ -150,6 +154,7 @@ def read_settings(text: str, faults: FaultList) -> Settings | None:
         answers=_answers(root),
         assurance=_assurance(root),
         account_rule=read_account_rule(root.inside("account")),
+        outside_rule=read_outside_rule(root.inside("outside_view")),
     )
 
 

@@ -43,7 +43,8 @@ def every_case() -> tuple[Bad, ...]:
     from tests.estimate.bad_files import FILES
     from tests.estimate.bad_history import HISTORY
     from tests.estimate.bad_links import LINKS
+    from tests.estimate.bad_outside import OUTSIDE
     from tests.estimate.bad_ranges import RANGES
     from tests.estimate.bad_settings import SETTINGS
 
-    return (*FILES, *SETTINGS, *CELLS, *RANGES, *LINKS, *EVENTS, *HISTORY)
+    return (*FILES, *SETTINGS, *CELLS, *RANGES, *LINKS, *EVENTS, *HISTORY, *OUTSIDE)
