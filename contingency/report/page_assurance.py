@@ -14,6 +14,7 @@ from contingency.report.wording import (
     Amounts,
     count,
     date,
+    fixed,
     grouped_fingerprint,
     plural,
     sentence,
@@ -173,7 +174,11 @@ def cross_check_page(study: Study, amounts: Amounts) -> CrossCheckPage:
             else "The interval of the target is wider than the tolerance, although the "
             "largest number of trials was run."
         ),
-        average_correlation=NOTHING if average is None else f"{average:.2f}",
+        average_correlation=(
+            "none, for fewer than two packages vary"
+            if average is None
+            else fixed(average, 2)
+        ),
     )
 
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from contingency.assurance.findings import Finding
 from contingency.estimate.nouns import SignOffLine
@@ -57,6 +57,8 @@ class TitlePage:
 
     owner: str
     project: str
+    is_long: bool
+    """Whether the project's name needs smaller letters."""
     revision: str
     gate: str
     status: str
@@ -155,8 +157,9 @@ def title_page(study: Study, *, draft: bool, issued_on: str, tool: str) -> Title
         ("Trials and seed", f"{count(study.simulation.trials)}; {estimate.run.seed}"),
     ]
     return TitlePage(
-        owner=estimate.owner,
-        project=estimate.project,
+        owner=clipped(estimate.owner, 80),
+        project=clipped(estimate.project, 240),
+        is_long=len(estimate.project) > 90,
         revision=estimate.revision,
         gate=estimate.gate,
         status=status,
@@ -231,8 +234,8 @@ def answer_page(
         base=amounts.full(printed.total.base),
         level=target.name,
         chance_words=f"{target.percent}{SPACE}%",
-        set_by=clipped(rule.set_by, 150).rstrip(".") or "No authority is recorded",
-        reason=sentence(clipped(rule.reason, 220)),
+        set_by=clipped(rule.set_by, 120).rstrip(".") or "No authority is recorded",
+        reason=sentence(clipped(rule.reason, 160)),
         percent_of_base=percent(target.percent_of_base / 100, 1),
         base_is_enough=chance(study.chance_base_is_enough),
         middle=f"{amounts.cell(p10)} to {amounts.cell(p90)}",
@@ -240,7 +243,12 @@ def answer_page(
         mean=amounts.cell(printed.mean),
         chart=chart.name,
         chart_alt=chart.alt,
-        levels=level_rows(study, printed, amounts)[:6],
+        levels=tuple(
+            replace(
+                row, purpose=clipped(row.purpose, 26), holder=clipped(row.holder, 26)
+            )
+            for row in level_rows(study, printed, amounts)[:5]
+        ),
         target_is_listed=any(lv.percent == target.percent for lv in study.levels),
         unit=amounts.caption,
         drivers=tuple(_top_driver(driver, amounts) for driver in inputs[:5]),
@@ -269,12 +277,12 @@ def _worst_cautions(study: Study) -> tuple[AnswerCaution, ...]:
         AnswerCaution(
             mark=finding.severity.capitalize()
             + (", answered" if finding.is_answered else ""),
-            words=sentence(clipped(finding.message, 210)),
+            words=sentence(clipped(finding.message, 170)),
         )
         for finding in order
     ]
     found += [
-        AnswerCaution(mark="Stated", words=clipped(words, 210))
+        AnswerCaution(mark="Stated", words=clipped(words, 170))
         for words in study.estimate.statements.cautions
     ]
     return tuple(found[:3])

@@ -334,7 +334,11 @@ def inputs_page(study: Study, *, step: float) -> InputsPage:
             for p in estimate.correlations
         ),
         general_dependence="not stated" if general is None else fixed(general, 2),
-        average_correlation=NOTHING if average is None else fixed(average, 2),
+        average_correlation=(
+            "none, for fewer than two packages vary"
+            if average is None
+            else fixed(average, 2)
+        ),
         repair=""
         if repair is None
         else f"The largest change is {fixed(repair[0], 3)}, between {repair[1]} and "

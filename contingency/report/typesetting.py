@@ -194,10 +194,10 @@ def _no_engine(found: str) -> NoTextEngine:
 
 
 LET_GO = (
-    "*, *::before { break-inside: auto !important; break-after: auto !important }"
-    "tr, tbody { break-before: auto !important }"
+    "table, thead, tbody, tr, th, td { break-inside: auto !important;"
+    " break-before: auto !important; break-after: auto !important }"
 )
-"""Style that keeps nothing together, for a text that no page can hold in one piece."""
+"""Style that keeps no rows together, for a row that no page can hold in one piece."""
 
 
 def _laid_out(source: Any, fonts: Any, options: dict[str, Any], engine: Any) -> Any:  # noqa: ANN401
