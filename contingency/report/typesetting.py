@@ -363,7 +363,7 @@ def _make_signature_fields(pdf: Any) -> None:  # noqa: ANN401
     for thing in list(pdf.objects):
         if not isinstance(thing, dict) or thing.get("FT") != "/Btn":
             continue
-        if not thing["T"].data.startswith(b"sig_"):
+        if not thing["T"].string.startswith("sig_"):
             continue
         thing["FT"] = "/Sig"
         for key in ("AS", "MK", "V", "Border", "DA", "Ff"):
