@@ -42,10 +42,14 @@ OUTSIDE_KEYS: dict[str, tuple[str, ...]] = {
         "percentiles",
         "uplifts",
     ),
-    "outside_view.percentiles": tuple(f"P{percent}" for percent in range(1, 100)),
     "outside_view.uplifts": ("kind", "share", "upper", "managed"),
 }
 """The keys under [outside_view] of estimate.toml."""
+OUTSIDE_REQUIRED: dict[str, tuple[str, ...]] = {
+    "outside_view.uplifts": ("kind", "share", "upper"),
+}
+PERCENTILES = tuple(f"P{percent}" for percent in range(1, 100))
+"""The keys of `percentiles`."""
 
 _SHARES_TOLERANCE = 1e-9
 # How far shares written in decimals may miss 100 % by rounding.
@@ -117,9 +121,9 @@ def _percentiles(section: Section) -> tuple[tuple[int, float], ...]:
     inside = section.inside("percentiles")
     if inside is None:
         return ()
-    inside.check_keys(OUTSIDE_KEYS["outside_view.percentiles"], (), {})
+    inside.check_keys(PERCENTILES, (), {})
     points = []
-    for name in OUTSIDE_KEYS["outside_view.percentiles"]:
+    for name in PERCENTILES:
         overrun = inside.number_within(name, -100.0, math.inf, low_included=False)
         if overrun is not None:
             points.append((int(name[1:]), overrun / 100.0))
@@ -139,8 +143,8 @@ def _uplifts(section: Section) -> tuple[UpliftPart, ...]:
     """Return the parts of a published uplift; figures are written in percent."""
     parts = []
     for line in section.each("uplifts"):
-        needed = ("kind", "share", "upper")
-        line.check_keys(OUTSIDE_KEYS["outside_view.uplifts"], needed, {})
+        name = "outside_view.uplifts"
+        line.check_keys(OUTSIDE_KEYS[name], OUTSIDE_REQUIRED[name], {})
         share = line.number_within("share", 0.0, 100.0)
         upper = line.number_within("upper", 0.0, math.inf)
         managed = line.number_within("managed", 0.0, 100.0)

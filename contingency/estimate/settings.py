@@ -33,7 +33,11 @@ from contingency.estimate.faults import (
     TrialsNotInBlocks,
     TrialsOutOfOrder,
 )
-from contingency.estimate.history import OUTSIDE_KEYS, read_outside_rule
+from contingency.estimate.history import (
+    OUTSIDE_KEYS,
+    OUTSIDE_REQUIRED,
+    read_outside_rule,
+)
 from contingency.estimate.nouns import (
     AccountRule,
     Answer,
@@ -100,6 +104,7 @@ REQUIRED: dict[str, tuple[str, ...]] = {
     "statements.exclusions": ("id", "text"),
     "sign_off": ("role",),
     "answers": ("check", "answer", "by", "on"),
+    **OUTSIDE_REQUIRED,
 }
 HEADINGS = ("estimate", "contingency", "simulation")
 """Headings that must be there."""
