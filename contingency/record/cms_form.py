@@ -141,6 +141,9 @@ def _certificate_faults(signer: Any, certificates: Sequence[Any]) -> Iterator[st
         if _is_in(plain, named):
             continue  # the signature covers its digest
         name = one.subject.rfc4514_string()
+        if len(named) > 1:
+            yield f"the certificate of {name} is not among those signed with"
+            continue
         issuers = [other for other in loaded if other.subject == one.issuer]
         if issuers and not any(_issued(one, issuer) for issuer in issuers):
             yield f"the certificate of {name} is damaged"
@@ -152,7 +155,8 @@ def _digests_inside(signer: Any) -> Iterator[tuple[str, bytes]]:  # noqa: ANN401
     """Give the digests of certificates that the signature covers (RFC 5035).
 
     The first is that of the signer.  Seals of this program name all certificates
-    that they carry; others may name the first alone.
+    that they carry; others may name the first alone, and the rest is then held
+    against one another as far as that goes.
     """
     for attribute in signer["signed_attrs"]:
         kind = attribute["type"].dotted

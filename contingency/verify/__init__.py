@@ -1,0 +1,1 @@
+"""Takes a report apart, computes it again, and says what holds."""
