@@ -148,10 +148,11 @@ class Triangular(ShapeByTails):
         """Return the chance of not exceeding `x`, same shape as `x`."""
         place = _place_within(x, self.low, self.high)
         mode = _place(self.low, self.likely, self.high)
-        # The side without width is never used; 1 keeps the division defined.
-        rising = place**2 / (mode or 1.0)
-        falling = 1.0 - (1.0 - place) ** 2 / ((1.0 - mode) or 1.0)
-        return np.where(place <= mode, rising if mode else 0.0, falling)
+        # Each side up to the mode only, so that a side of hardly any width is harmless.
+        rise, fall = np.minimum(place, mode), np.minimum(1.0 - place, 1.0 - mode)
+        rising = rise * (rise / mode) if mode > 0.0 else 0.0
+        falling = fall * (fall / (1.0 - mode)) if mode < 1.0 else 0.0
+        return np.where(place <= mode, rising, 1.0 - falling)
 
     def standard_form(self) -> tuple[StandardKey, float, float]:
         """Return the key of the triangular on [0, 1], low and high - low."""

@@ -22,6 +22,10 @@ from contingency.quantities.unbounded import Lognormal, Normal
 _LEAST_LOG_SPREAD = 1e-6
 # A lognormal with a smaller spread of its logarithm is a normal to six digits.
 
+_MOST_LOG_SPREAD = 4.0
+# Its P90 is 28,000 times its P10, and its mean 3,000 times its median: no number of
+# trials would settle a total with such a part, and soon after floats overflow.
+
 _MIDPOINT_TOLERANCE = 1e-6
 # A normal's likely value may miss the midpoint by this part of high - low.
 
@@ -195,8 +199,9 @@ def lognormal_from_percentiles(
     Raises
     ------
     NoSuchCurve
-        no-such-curve.  low is not above 0 (two parameters), or the likely value is too
-        far up for a curve that leans to the high side (three).
+        no-such-curve.  low is not above 0, or the spread of the logarithm is above 4
+        (two parameters); the likely value is too far up for a curve that leans to the
+        high side (three).
     """
     first, second = _scores(low_percent, high_percent)
     if likely is not None:
@@ -209,7 +214,18 @@ def lognormal_from_percentiles(
             remedy="Give a likely value (the curve is then shifted), or choose the "
             "shape normal or pert.",
         )
-    log_spread = math.log(high / low) / (second - first)
+    log_spread = (math.log(high) - math.log(low)) / (second - first)
+    if log_spread > _MOST_LOG_SPREAD:
+        raise NoSuchCurve(
+            where="range",
+            found=f"low {_figure(low)} and high {_figure(high)} at P{low_percent:g} and "
+            f"P{high_percent:g}: the logarithm would spread by {log_spread:.1f}.",
+            rule="The logarithm of a lognormal spreads by at most "
+            f"{_MOST_LOG_SPREAD:g} here; the mean of a wider one lies beyond any total "
+            "that can be simulated.",
+            remedy="Bring low and high closer together, give a likely value, or choose "
+            "the shape pert.",
+        )
     median = low * math.exp(-log_spread * first)
     return Lognormal(median=median, scale=median, log_spread=log_spread)
 

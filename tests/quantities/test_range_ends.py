@@ -222,6 +222,11 @@ NO_CURVE = {
         {"low": 0.0, "high": 2.0} | ENDS,
         "positive values only",
     ),
+    "lognormal over all bounds": (
+        "lognormal",
+        {"low": 1e-9, "high": 2.0, "low_percent": 45, "high_percent": 55},
+        "spreads by at most 4",
+    ),
     "lognormal leaning to the low side": (
         "lognormal",
         {"low": 1.0, "likely": 3.0, "high": 4.0} | ENDS,
