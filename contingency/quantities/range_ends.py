@@ -218,7 +218,7 @@ def lognormal_from_percentiles(
     if log_spread > _MOST_LOG_SPREAD:
         raise NoSuchCurve(
             where="range",
-            found=f"low {_figure(low)} and high {_figure(high)} at P{low_percent:g} and "
+            found=f"low {_figure(low)} at P{low_percent:g} and high {_figure(high)} at "
             f"P{high_percent:g}: the logarithm would spread by {log_spread:.1f}.",
             rule="The logarithm of a lognormal spreads by at most "
             f"{_MOST_LOG_SPREAD:g} here; the mean of a wider one lies beyond any total "
