@@ -115,10 +115,10 @@ class Curves:
         lognormals = [s for s in ordered if isinstance(s, Lognormal)]
         self._shift = _column([s.shift for s in lognormals])
         self._scale = _column([s.scale for s in lognormals])
-        self._log_spread = _column([s.log_spread for s in lognormals])
+        self._log_spread = _column([s.log_spread for s in lognormals]) / STEPS_PER_SCORE
         normals = [s for s in ordered if isinstance(s, Normal)]
         self._centre = _column([s.centre for s in normals])
-        self._spread = _column([s.spread for s in normals])
+        self._spread = _column([s.spread for s in normals]) / STEPS_PER_SCORE
         self._listed = [s for s in ordered if isinstance(s, (Discrete, Points))]
         self._constant = _column([s.mean for s in ordered if isinstance(s, Fixed)])
 
@@ -135,6 +135,14 @@ class Curves:
         """Write to `out` curves `first`, `first` + 1, ... at (r, n) scores.
 
         `score` is used as workspace.
+        """
+        np.multiply(score, STEPS_PER_SCORE, out=score)
+        self.read_steps(score, first, out)
+
+    def read_steps(self, score: Array, first: int, out: Array) -> None:
+        """Write to `out` the same, for scores counted in steps of the grid.
+
+        Who makes many scores counts them in steps at once and saves a pass.
         """
         readers = (
             self._read_tables,
@@ -158,19 +166,20 @@ class Curves:
         `score` is used as workspace.
         """
         tabled = int(np.searchsorted(row, self._edges[1]))
+        np.multiply(score, STEPS_PER_SCORE, out=score)
         self._look_up(score[:tabled], self._tables.start[row[:tabled], 0], out[:tabled])
         for one in np.unique(row[tabled:]):
             first, last = np.searchsorted(row, [one, one + 1])
-            self.read(score[None, first:last], int(one), out[None, first:last])
+            self.read_steps(score[None, first:last], int(one), out[None, first:last])
 
     def _read_tables(self, score: Array, rows: slice, out: Array) -> None:
         self._look_up(score, self._tables.start[rows], out)
 
     def _look_up(self, score: Array, start: Array, out: Array) -> None:
         tables = self._tables
-        if score.size and max(score.max(), -score.min()) >= LAST_SCORE:
-            np.clip(score, -LAST_SCORE, LAST_SCORE, out=score)
-        np.multiply(score, STEPS_PER_SCORE, out=score)
+        last = LAST_SCORE * STEPS_PER_SCORE
+        if score.size and max(score.max(), -score.min()) >= last:
+            np.clip(score, -last, last, out=score)
         np.floor(score, out=out)
         np.subtract(score, out, out=score)
         np.add(out, start, out=out)
@@ -191,7 +200,7 @@ class Curves:
 
     def _read_listed(self, score: Array, rows: slice, out: Array) -> None:
         for shape, at, to in zip(self._listed[rows], score, out, strict=True):
-            to[:] = shape.at_score(at)
+            to[:] = shape.at_score(at / STEPS_PER_SCORE)
 
     def _read_fixed(self, score: Array, rows: slice, out: Array) -> None:
         del score

@@ -41,17 +41,17 @@ Order = NDArray[np.int64]
 BLOCK = 4096
 """Trials in one Latin hypercube; a constant of the method."""
 
-_INDEX_BITS = 12
+_TRIALS = np.arange(BLOCK, dtype=np.uint64)
 _INDEX_MASK = np.uint64(BLOCK - 1)
 _KEEP_MASK = np.uint64(2**64 - BLOCK)
+_OFFSET_MASK = np.uint64(2**40 - 1)
 _ONE_AS_BITS = np.uint64(0x3FF0000000000000)
-_DROP = np.uint64(24)
-_TO_MANTISSA = np.uint64(12)
 
-_TRIALS = np.arange(BLOCK, dtype=np.uint64)
-
-_EXACT_TAIL = 32
+_EXACT = 32
 """Strata at either end whose scores come from the inverse normal itself."""
+_CURVED = 512
+"""Strata at either end, beyond the exact ones, that take a parabola; the others take
+a straight line."""
 
 
 def stream_key(seed: int, name: str, block: int) -> Words:
@@ -96,8 +96,9 @@ class Strata:
 
     trial: Order
     """(k, n) the trial that each stratum belongs to."""
-    place: Array
-    """(k, n) one plus the place within the stratum, in [1, 2)."""
+    offset: Array
+    """(k, n) one plus the distance of the uniform from the stratum's lower end, in
+    [1, 1 + 1/4096)."""
 
 
 def strata(source: Source, names: Sequence[str], block: int) -> Strata:
@@ -115,45 +116,71 @@ def _strata_of(words: Words) -> Strata:
     np.bitwise_or(words, _TRIALS, out=words)
     words.sort(axis=1)
     trial = (words & _INDEX_MASK).view(np.int64)
-    # The upper 24 bits know the rank; the next 28 do not, to better than 1e-7.
-    np.left_shift(words, _DROP, out=words)
-    np.right_shift(words, _TO_MANTISSA, out=words)
+    # The upper 24 bits know the rank; the next 28 do not, to better than 1e-7.  As the
+    # lowest bits of a float next to one they are the offset, and nothing is converted.
+    np.bitwise_and(words, _OFFSET_MASK, out=words)
     np.bitwise_or(words, _ONE_AS_BITS, out=words)
-    return Strata(trial=trial, place=words.view(np.float64))
+    return Strata(trial=trial, offset=words.view(np.float64))
 
 
 @cache
 def _score_polynomial() -> tuple[Array, Array, Array]:
-    """Return coefficients (n,) of a parabola in `place` for each stratum.
+    """Return coefficients (n,) of a parabola in `offset` for each stratum.
 
-    Through the inverse normal at the three Chebyshev nodes of the stratum.  Off by
-    less than 2e-7 outside the exact tails (held by a test).
+    Through the inverse normal at the Chebyshev nodes of the stratum: three for the
+    curved strata, two (and no square) for the others.  Off by less than 2e-7 outside
+    the exact tails (held by a test).
     """
-    nodes = np.cos(np.pi * (2 * np.arange(3) + 1) / 6) / 2 + 1.5
-    edges = np.arange(BLOCK)[:, None]
-    values = ndtri((edges + nodes - 1.0) / BLOCK)  # (n, 3)
-    parabola = np.linalg.solve(np.vander(nodes, 3), values.T)  # (3, n)
-    second, first, constant = (np.ascontiguousarray(row) for row in parabola)
+    lower = np.arange(BLOCK)
+    second, first, constant = parabolas(lower / BLOCK, 1.0 / BLOCK)
+    middle = slice(_CURVED, BLOCK - _CURVED)
+    nodes = np.array([-1.0, 1.0]) * np.sqrt(0.125) + 0.5
+    below, above = ndtri((lower[middle] + nodes[:, None]) / BLOCK)
+    second[middle] = 0.0
+    first[middle] = (above - below) / (nodes[1] - nodes[0]) * BLOCK
+    constant[middle] = below - first[middle] * (1.0 + nodes[0] / BLOCK)
     return second, first, constant
 
 
-def scores(cells: Strata, out: Array | None = None) -> Array:
-    """Return (k, n) stratified standard normal scores in trial order.
+def parabolas(lower: Array, width: Array | float) -> tuple[Array, Array, Array]:
+    """Return parabolas in `offset` for normal scores of slices of a uniform.
 
-    Stratum i of 4,096 holds the score ``ndtri((i + place - 1) / 4096)``.
+    Parameters
+    ----------
+    lower : (m,) array
+        Chance at the lower end of each slice; the ends stay inside 0 to 1.
+    width : float or (m,) array
+        Chance that one stratum, 1/4096 of the stream's uniform, stands for.
+
+    Returns
+    -------
+    second, first, constant : (m,) arrays
+        ``(second * offset + first) * offset + constant`` is the normal score.
     """
-    second, first, constant = _score_polynomial()
-    place = cells.place
-    value = place * second
-    value += first
-    value *= place
+    nodes = np.cos(np.pi * (2 * np.arange(3) + 1) / 6) / 2 + 0.5
+    values = ndtri(lower + width * nodes[:, None])  # (3, m)
+    square, slope, level = np.linalg.solve(np.vander(nodes, 3), values)
+    # From the place in the stratum, 0 to 1, to offset = 1 + place / 4096.
+    second = square * BLOCK**2
+    first = slope * BLOCK - 2.0 * second
+    constant = level - slope * BLOCK + second
+    return second, first, constant
+
+
+def scores(cells: Strata, out: Array | None = None, scale: float = 1.0) -> Array:
+    """Return (k, n) stratified normal scores, times `scale`, in trial order.
+
+    Stratum i of 4,096 holds the score ``ndtri(i / 4096 + offset - 1)``.
+    """
+    second, first, constant = (scale * c for c in _score_polynomial())
+    offset = cells.offset
+    value = offset * first
     value += constant
-    for part, start in (
-        (slice(None, _EXACT_TAIL), 0),
-        (slice(-_EXACT_TAIL, None), BLOCK - _EXACT_TAIL),
-    ):
-        index = np.arange(start, start + _EXACT_TAIL)
-        value[:, part] = _tail_score(index, place[:, part])
+    for curved in (slice(None, _CURVED), slice(-_CURVED, None)):
+        near = offset[:, curved]
+        value[:, curved] += second[curved] * near * near
+    for tail in (slice(None, _EXACT), slice(-_EXACT, None)):
+        value[:, tail] = scale * _tail_scores(offset[:, tail], lower=tail.stop)
     if out is None:
         out = np.empty_like(value)
     for to, trial, score in zip(out, cells.trial, value, strict=True):
@@ -161,22 +188,24 @@ def scores(cells: Strata, out: Array | None = None) -> Array:
     return out
 
 
-def _tail_score(index: NDArray[np.int64], place: Array) -> Array:
-    """Return exact scores of strata near either end, upper ones by symmetry."""
-    if index[0] == 0:
-        return np.asarray(ndtri(_inside((index + (place - 1.0)) / BLOCK)))
-    above = (BLOCK - index - (place - 1.0)) / BLOCK
+def _tail_scores(offset: Array, *, lower: int | None) -> Array:
+    """Return exact scores of the outermost strata, upper ones by symmetry."""
+    if lower:
+        at = np.arange(_EXACT) / BLOCK + (offset - 1.0)
+        return np.asarray(ndtri(_inside(at)))
+    above = np.arange(_EXACT, 0, -1) / BLOCK - (offset - 1.0)
     return np.asarray(-ndtri(_inside(above)))
 
 
 def _inside(p: Array) -> Array:
-    """Keep a chance off nought: the smallest step of `place` is 2**-40."""
+    """Keep a chance off nought: the smallest step of an offset is 2**-52."""
     return np.maximum(p, 2.0**-54)
 
 
 def uniforms(cells: Strata) -> Array:
     """Return (k, n) stratified uniforms in [0, 1), in the order of the strata."""
-    return (np.arange(BLOCK) + (cells.place - 1.0)) / BLOCK
+    # Both terms are whole multiples of 2**-52, so that nothing is rounded.
+    return (np.arange(BLOCK) / BLOCK - 1.0) + cells.offset
 
 
 def plain_uniforms(words: Words) -> Array:

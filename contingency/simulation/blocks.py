@@ -12,6 +12,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 from numpy.typing import NDArray
 
+from contingency.quantities.curves import STEPS_PER_SCORE
 from contingency.quantities.draws import BLOCK, Source, scores, strata
 from contingency.quantities.percentiles import rank
 from contingency.simulation.cost_model import CostModel
@@ -20,7 +21,7 @@ from contingency.simulation.events import DrawnEvents, draw_events
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 
-TILE = 8
+TILE = 16
 """Inputs handled in one call: long enough to leave the interpreter's lock, short
 enough for the processor's cache."""
 NEAR_RANKS = 41
@@ -189,40 +190,66 @@ def _draw_ranges(
     """
     dependence = model.dependence
     weights = dependence.weights
-    joined = None
+    common = common * STEPS_PER_SCORE
+    joint = None
     if dependence.root is not None:
-        own = scores(strata(work.source, model.streams, block))
-        joined = dependence.root @ own  # (v, n)
+        joint = _joint_scores(model, dependence.root, block, work)
     first_cause = weights.shape[1] - len(model.causes)
     added = np.zeros((len(model.causes), BLOCK))
     for first in range(0, model.varying, TILE):
         rows = slice(first, min(first + TILE, model.varying))
-        if joined is not None:
-            score = joined[rows].copy()
+        score = work.tile[: rows.stop - rows.start]
+        if joint is None:
+            _tile_scores(model, block, work, rows, common, score)
         else:
-            score = work.tile[: rows.stop - rows.start]
-            scores(strata(work.source, model.streams[rows], block), out=score)
-            score *= dependence.own[rows]
-            if weights.shape[1] == 1:
-                score += weights[rows] * common
-            elif weights.shape[1]:
-                score += weights[rows] @ common
-        np.less(score, TENTH_SCORE, out=work.low[rows])
-        np.greater(score, -TENTH_SCORE, out=work.high[rows])
+            score[:] = joint[rows]
+        np.less(score, TENTH_SCORE * STEPS_PER_SCORE, out=work.low[rows])
+        np.greater(score, -TENTH_SCORE * STEPS_PER_SCORE, out=work.high[rows])
         middle = [
             (j, score - weights[rows, first_cause + j, None] * common[first_cause + j])
             for j in range(len(model.causes))
-            if joined is None and weights[rows, first_cause + j].any()
+            if joint is None and weights[rows, first_cause + j].any()
         ]
         value = work.value[rows]
-        model.ranges.read(score, first, value)
+        model.ranges.read_steps(score, first, value)
         for j, score_without in middle:
             without = np.empty_like(value)
-            model.ranges.read(score_without, first, without)
+            model.ranges.read_steps(score_without, first, without)
             np.subtract(value, without, out=without)
             without *= factor[model.pattern_of[rows]]
             added[j] += without.sum(axis=0)
     return added
+
+
+def _tile_scores(
+    model: CostModel,
+    block: int,
+    work: Workspace,
+    rows: slice,
+    common: Array,
+    score: Array,
+) -> None:
+    """Fill (r, n) `score` with the scores of some ranges, counted in grid steps."""
+    dependence = model.dependence
+    weights = dependence.weights[rows]
+    cells = strata(work.source, model.streams[rows], block)
+    own = dependence.own[rows, 0]
+    if np.all(own == own[0]):
+        # Without loads all ranges have one weight: it goes into the polynomials.
+        scores(cells, out=score, scale=float(own[0]) * STEPS_PER_SCORE)
+    else:
+        scores(cells, out=score, scale=STEPS_PER_SCORE)
+        score *= dependence.own[rows]
+    if weights.shape[1] == 1 and np.all(weights == weights[0]):
+        score += weights[0] * common
+    elif weights.shape[1]:
+        score += weights @ common
+
+
+def _joint_scores(model: CostModel, root: Array, block: int, work: Workspace) -> Array:
+    """Return (v, n) scores under given pairs of correlations, in grid steps."""
+    own = scores(strata(work.source, model.streams, block), scale=STEPS_PER_SCORE)
+    return np.asarray(root @ own)
 
 
 def _pattern_rows(model: CostModel) -> Array:

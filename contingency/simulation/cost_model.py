@@ -25,6 +25,7 @@ from contingency.quantities.dependence import (
     own_weight,
     rank_to_normal,
 )
+from contingency.quantities.draws import BLOCK, parabolas
 from contingency.quantities.shapes import Shape
 
 Array = NDArray[np.float64]
@@ -71,6 +72,30 @@ class Unit:
 
     stream: str
     members: tuple[Member, ...]
+
+
+@dataclass(frozen=True, kw_only=True)
+class Places:
+    """Every stratum in which an event may happen, in the order of the impact curves.
+
+    Axes: ``m`` pairs of event and stratum; ``x`` those near an end of an event's
+    slice, whose impact scores are taken from the inverse normal itself.
+    """
+
+    cell: NDArray[np.int64]
+    """(m,) place in the (units, 4096) strata laid flat."""
+    event: NDArray[np.int64]
+    """(m,) row of the event."""
+    second: Array
+    first: Array
+    constant: Array
+    """(m,) parabolas in the stratum's offset for the score of the impact."""
+    exact: NDArray[np.int64]
+    """(x,) which of the m."""
+    exact_lower: Array
+    """(x,) the stratum's lower end less the start of the event's slice."""
+    exact_width: Array
+    """(x,) the event's probability."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -124,7 +149,11 @@ class CostModel:
     impacts: Curves
     impact_row: NDArray[np.int64]
     """(e,) row in `impacts` of each event."""
+    signs: Array
+    """(e,) +1 for a threat, -1 for an opportunity."""
     units: tuple[Unit, ...]
+    places: Places
+    """Where in the strata of the units the events happen."""
     repeated: tuple[Repeated, ...]
     parents: tuple[int | None, ...]
     """Row of the event that must have happened, if any."""
@@ -172,7 +201,9 @@ def build_model(estimate: Estimate) -> CostModel:
         event_place=_places(estimate.open_events, events),
         impacts=impacts,
         impact_row=impact_row,
+        signs=np.array([event.sign for event in events]),
         units=units,
+        places=_places_of(units, impact_row),
         repeated=repeated,
         parents=parents,
         event_order=_parents_first(parents),
@@ -307,3 +338,58 @@ def _parents_first(parents: tuple[int | None, ...]) -> tuple[int, ...]:
     for row in range(len(parents)):
         visit(row)
     return tuple(order)
+
+
+EXACT_STRATA = 32
+"""Strata at either end of an event's slice that take no parabola."""
+
+
+def _places_of(units: tuple[Unit, ...], impact_row: NDArray[np.int64]) -> Places:
+    """Return where the events happen, sorted by impact curve and stratum."""
+    parts = [
+        _slice_of(unit, member)
+        for unit, member in sorted(
+            ((i, member) for i, unit in enumerate(units) for member in unit.members),
+            key=lambda pair: int(impact_row[pair[1].event]),
+        )
+        if member.stop > member.start
+    ]
+    cells, events, lowers, widths, inner = (
+        np.concatenate([part[i] for part in parts]) if parts else np.zeros(0)
+        for i in range(5)
+    )
+    exact = np.flatnonzero(inner == 0)
+    curved = np.flatnonzero(inner)
+    second, first, constant = (np.zeros(cells.size) for _ in range(3))
+    if curved.size:
+        width = 1.0 / (BLOCK * widths[curved])
+        second[curved], first[curved], constant[curved] = parabolas(
+            lowers[curved] / widths[curved], width
+        )
+    return Places(
+        cell=cells.astype(np.int64),
+        event=events.astype(np.int64),
+        second=second,
+        first=first,
+        constant=constant,
+        exact=exact,
+        exact_lower=lowers[exact],
+        exact_width=widths[exact],
+    )
+
+
+def _slice_of(unit: int, member: Member) -> tuple[Array, Array, Array, Array, Array]:
+    """Return cells, event, lower ends, probability and whether a parabola will do."""
+    first = int(np.floor(member.start * BLOCK))
+    last = int(np.ceil(member.stop * BLOCK))
+    stratum = np.arange(first, last)
+    size = stratum.size
+    inner = np.zeros(size)
+    inner[EXACT_STRATA : max(size - EXACT_STRATA, EXACT_STRATA)] = 1.0
+    return (
+        unit * BLOCK + stratum.astype(np.float64),
+        np.full(size, float(member.event)),
+        stratum / BLOCK - member.start,
+        np.full(size, member.stop - member.start),
+        inner,
+    )

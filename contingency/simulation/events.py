@@ -26,8 +26,6 @@ from contingency.simulation.cost_model import CostModel, Repeated
 Array = NDArray[np.float64]
 
 _SMALLEST = 2.0**-53
-Occurrences = tuple[NDArray[np.int64], Array]
-"""Trials in which an event happens, and the place on its impact curve in each."""
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -46,60 +44,50 @@ def draw_events(model: CostModel, block: int, source: Source) -> DrawnEvents:
     drawn = DrawnEvents(
         cost=np.zeros((count, BLOCK)), occurs=np.zeros((count, BLOCK), dtype=np.bool_)
     )
-    happening = _draw_units(model, block, source)
+    event, trial, score = _happenings(model, block, source)
+    drawn.occurs[event, trial] = True
     repeated = {r.event: r for r in model.repeated}
-    for event in model.event_order:
-        parent = model.parents[event]
+    for row in model.event_order:
+        parent = model.parents[row]
         allowed = None if parent is None else drawn.occurs[parent]
-        if event in repeated:
-            _repeat(model, repeated[event], block, source, allowed, drawn)
-            continue
-        trials, place = happening[event]
-        if allowed is not None:
-            kept = allowed[trials]
-            happening[event] = trials[kept], place[kept]
-        drawn.occurs[event, happening[event][0]] = True
-    _cost_once(model, happening, drawn)
+        if row in repeated:
+            _repeat(model, repeated[row], block, source, allowed, drawn)
+        elif allowed is not None:
+            drawn.occurs[row] &= allowed
+    if any(parent is not None for parent in model.parents):
+        kept = drawn.occurs[event, trial]
+        event, trial, score = event[kept], trial[kept], score[kept]
+    cost = np.empty_like(score)
+    model.impacts.read_each(score, model.impact_row[event], cost)
+    cost *= model.signs[event]
+    drawn.cost[event, trial] = cost
     return drawn
 
 
-def _cost_once(
-    model: CostModel, happening: dict[int, Occurrences], drawn: DrawnEvents
-) -> None:
-    """Cost all events that happen once, in one go over all their occurrences."""
-    by_row = sorted(happening, key=lambda event: int(model.impact_row[event]))
-    if not by_row:
-        return
-    counts = [happening[event][0].size for event in by_row]
-    trials = np.concatenate([happening[event][0] for event in by_row])
-    place = np.concatenate([happening[event][1] for event in by_row])
-    cost = _impact(model, np.repeat(model.impact_row[by_row], counts), place)
-    cost *= np.repeat([model.events[event].sign for event in by_row], counts)
-    drawn.cost[np.repeat(by_row, counts), trials] = cost
+def _happenings(
+    model: CostModel, block: int, source: Source
+) -> tuple[NDArray[np.int64], NDArray[np.int64], Array]:
+    """Return event, trial and impact score wherever an event's own choice comes out.
 
-
-def _draw_units(model: CostModel, block: int, source: Source) -> dict[int, Occurrences]:
-    """Return for each event its trials, parents put aside, and places on the curve."""
+    One (m,) array each, in the order of the impact curves; parents are put aside.
+    """
     cells = strata(source, [unit.stream for unit in model.units], block)
-    u = uniforms(cells)
-    result = {}
-    for row, unit in enumerate(model.units):
-        for member in unit.members:
-            first = int(np.floor(member.start * BLOCK))
-            last = int(np.ceil(member.stop * BLOCK))
-            at = u[row, first:last]
-            kept = (at >= member.start) & (at < member.stop)
-            place = (at[kept] - member.start) / (member.stop - member.start or 1.0)
-            result[member.event] = (cells.trial[row, first:last][kept], place)
-    return result
-
-
-def _impact(model: CostModel, row: NDArray[np.int64], place: Array) -> Array:
-    """Return the cost at places in [0, 1) of the impact curves `row`, ascending."""
-    score = np.asarray(ndtri(np.clip(place, _SMALLEST, 1.0 - _SMALLEST)))
-    cost = np.empty_like(score)
-    model.impacts.read_each(score, row, cost)
-    return cost
+    places = model.places
+    offset = cells.offset.reshape(-1)[places.cell]
+    trial = cells.trial.reshape(-1)[places.cell]
+    score = places.second * offset
+    score += places.first
+    score *= offset
+    score += places.constant
+    at = (places.exact_lower + (offset[places.exact] - 1.0)) / places.exact_width
+    score[places.exact] = ndtri(np.clip(at, _SMALLEST, 1.0 - _SMALLEST))
+    inside = (at >= 0.0) & (at < 1.0)
+    if inside.all():
+        return places.event, trial, score
+    # A stratum that the probability cuts in two belongs to the event in part only.
+    kept = np.ones(score.size, dtype=np.bool_)
+    kept[places.exact] = inside
+    return places.event[kept], trial[kept], score[kept]
 
 
 def _repeat(
@@ -123,6 +111,8 @@ def _repeat(
     for turn in range(1, int(times.max()) + 1):
         trials = np.flatnonzero(times >= turn)
         place = plain_uniforms(source.raw(f"{repeated.stream}/{turn}", block))
+        score = np.asarray(ndtri(place[trials]))
+        cost = np.empty_like(score)
         row = np.full(trials.size, model.impact_row[event])
-        cost = _impact(model, row, place[trials])
-        drawn.cost[event, trials] += model.events[event].sign * cost
+        model.impacts.read_each(score, row, cost)
+        drawn.cost[event, trials] += model.signs[event] * cost
