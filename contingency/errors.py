@@ -82,6 +82,12 @@ class TooFewTrials(AnalysisError):
     slug = "too-few-trials"
 
 
+class TooFewProjects(AnalysisError):
+    """A history has fewer closed projects than a test of it needs."""
+
+    slug = "too-few-projects"
+
+
 class PartsDoNotClose(AnalysisError):
     """Parts and total are further apart than rounding can close."""
 

@@ -40,6 +40,14 @@ THIN_SHARE = Threshold(
     meaning="smallest share",
     most=100,
 )
+LEAST_OF_OUTSIDE = Threshold(
+    name="least_of_outside_percent",
+    default=50,
+    unit="% of the outside P80",
+    grade="H",
+    meaning="caution where P80 allows less than",
+    most=100,
+)
 EARLY_CLASS = Threshold(
     name="early_from_class",
     default=4,
@@ -126,4 +134,64 @@ def thin_systemic_layer(material: Material, settings: Settings) -> Verdict:
     return [Hit(severity="caution", message=message)]
 
 
-CHECKS = (no_systemic_layer, thin_systemic_layer)
+@result_check(
+    slug="outside-view-gap",
+    subject="systemic risks and events",
+    title="Gap to the outside view",
+    catches="An inside view far from what similar projects came to.",
+    rule=(
+        "P80 of the total over base against the outside view: major below its P50,"
+        " caution where it allows less than a share of its P80. P50 of the total above"
+        " the outside P80 is a caution too. Without an outside view it is a note."
+    ),
+    thresholds=(LEAST_OF_OUTSIDE,),
+    severities=("major", "caution", "note"),
+    todo=(
+        "Explain what makes this project unlike the others, or look for systemic risks"
+        " and dependence left out. Without closed projects, add history.csv or"
+        " published percentiles with [outside_view]."
+    ),
+    sources=(
+        Source(
+            "UK Department for Transport (2004), procedures for dealing with optimism"
+            " bias, and its update of 2020",
+            "READ-title",
+        ),
+        Source("Flyvbjerg, B. (2006), From Nobel Prize to project management", "READ"),
+        Source("UK National Audit Office (2013), over-optimism", "READ"),
+        Source("GAO-15-596, space launch system: no cross-check", "READ"),
+    ),
+)
+def outside_view_gap(material: Material, settings: Settings) -> Verdict:
+    """Find whether the model allows much less, or more, than others needed."""
+    # Loaded here, for `contingency check` needs no statistics of histories.
+    from contingency.assurance.outside_view import outside_view
+
+    outside = outside_view(material)
+    if isinstance(outside, str):
+        return [Hit(severity="note", message=outside)]
+    base = material.estimate.base
+    middle, high = outside.ratio(50), outside.ratio(80)
+    if base <= 0 or middle is None or high is None:
+        return NotApplicable("The outside view has no P50 or no P80.")
+    model_middle = material.percentile(50) / base - 1
+    model_high = material.percentile(80) / base - 1
+    message = (
+        "Similar projects came to their base"
+        f" {_signed(middle - 1)} at P50 and {_signed(high - 1)} at P80"
+        f" ({outside.source}); this model allows {_signed(model_middle)} and"
+        f" {_signed(model_high)}."
+    )
+    if model_high < middle - 1:
+        return [Hit(severity="major", message=message)]
+    least = settings.number(LEAST_OF_OUTSIDE) / 100
+    if model_high < least * (high - 1) or model_middle > high - 1:
+        return [Hit(severity="caution", message=message)]
+    return []
+
+
+def _signed(fraction: float) -> str:
+    return f"{100 * fraction:+.0f} %"
+
+
+CHECKS = (no_systemic_layer, thin_systemic_layer, outside_view_gap)

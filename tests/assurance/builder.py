@@ -20,6 +20,7 @@ from contingency.estimate.nouns import (
     Evidence,
     Exclusion,
     Level,
+    OutsideRule,
     PackageShare,
     RiskEvent,
     Run,
@@ -135,6 +136,16 @@ SIGN_OFFS = (
 )
 
 
+ALIKE = {
+    "stage": "estimates of gate 3",
+    "money": "money of the gate's price date",
+    "scope": "scope as approved at the gate",
+}
+OUTSIDE = OutsideRule(
+    source="a published table", percentiles=((50, 0.12), (80, 0.27)), **ALIKE
+)
+
+
 def sound_estimate(**changes):
     """A fresh estimate that trips no check, with fields of your own."""
     given = {
@@ -153,6 +164,7 @@ def sound_estimate(**changes):
         "packages": PACKAGES,
         "systemic": (systemic(),),
         "events": EVENTS,
+        "outside_rule": OUTSIDE,
         "sources": (SourceFile(name="estimate.toml", content=b""),),
         "fingerprint": "0" * 64,
     } | changes

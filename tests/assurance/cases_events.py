@@ -3,9 +3,10 @@
 import dataclasses
 import datetime as dt
 
-from contingency.estimate.nouns import Load, PackageShare
+from contingency.estimate.nouns import Load, OutsideRule, PackageShare
 from tests.assurance.builder import (
     EVENTS,
+    OUTSIDE,
     PACKAGES,
     cause,
     changed,
@@ -60,6 +61,12 @@ def covered(id_, share):
 def small_contingency(amount=3_000_000.0):
     """The target with so much contingency."""
     return dataclasses.replace(sound_study().target, contingency=amount)
+
+
+def outside(middle, high):
+    """The sound study beside a table with this P50 and P80."""
+    rule = OUTSIDE.model_copy(update={"percentiles": ((50, middle), (80, high))})
+    return spoiled(estimate=sound_estimate(outside_rule=rule))
 
 
 def boxed(count, values):
@@ -127,6 +134,35 @@ CASES = (
         "10 % of the variance of an estimate of class 4",
     ),
     twin("thin-systemic-layer", "30 % at class 4", lambda: with_systemic_share(0.30)),
+    fault(
+        "outside-view-gap",
+        "far below what others needed",
+        lambda: outside(0.4, 0.57),
+        "major",
+        "+40 % at P50 and +57 % at P80 (a published table); this model allows +14 %",
+    ),
+    fault(
+        "outside-view-gap",
+        "less than half of it",
+        lambda: outside(0.2, 0.57),
+        "caution",
+        "+25 %.",
+    ),
+    fault(
+        "outside-view-gap",
+        "more than others ever needed",
+        lambda: outside(0.02, 0.1),
+        "caution",
+        "+2 % at P50 and +10 % at P80",
+    ),
+    fault(
+        "outside-view-gap",
+        "nothing to compare with",
+        lambda: spoiled(estimate=sound_estimate(outside_rule=OutsideRule())),
+        "note",
+        "No closed projects and no published percentiles are given.",
+    ),
+    twin("outside-view-gap", "as others", lambda: outside(0.12, 0.27)),
     fault(
         "counted-twice",
         "titles alike",
