@@ -29,6 +29,9 @@ from contingency.study import Study
 REQUIRED_ROLES = ("prepared", "checked", "approved")
 """Roles that have a line even if the estimate does not name them."""
 
+MOST_LEVELS = 6
+"""Funded levels that the answer page shows; the chapter Result shows all."""
+
 
 @dataclass(frozen=True, kw_only=True, slots=True)
 class Fact:
@@ -247,7 +250,7 @@ def answer_page(
             replace(
                 row, purpose=clipped(row.purpose, 26), holder=clipped(row.holder, 26)
             )
-            for row in level_rows(study, printed, amounts)[:5]
+            for row in level_rows(study, printed, amounts)[:MOST_LEVELS]
         ),
         target_is_listed=any(lv.percent == target.percent for lv in study.levels),
         unit=amounts.caption,
