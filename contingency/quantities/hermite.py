@@ -8,7 +8,8 @@ ranges as the sum of a_n b_n r^n ([1]_; Mehler's formula [2]_).  Derivation:
 
 References
 ----------
-.. [1] Mardia, K. V. (1970). Families of Bivariate Distributions. Griffin. Chapter 6.
+.. [1] Morrison, R. and Basor, E. (2024). Exact mean and covariance formulas after
+   diagonal transformations of a multivariate normal. arXiv:2407.00240
 .. [2] Mehler, F. G. (1866). Ueber die Entwicklung einer Function von beliebig vielen
    Variablen nach Laplaceschen Functionen hoeherer Ordnung. J. reine angew. Math. 66,
    161-176. doi:10.1515/crll.1866.66.161

@@ -2,6 +2,7 @@
 
 import numpy as np
 import pytest
+from scipy.special import betaincinv, ndtri
 
 from contingency.errors import AnalysisError, NoSuchCurve
 from contingency.quantities.shapes import (
@@ -330,3 +331,34 @@ def test_the_median_itself_may_be_an_end(low_percent, high_percent):
     assert found.cdf([1.0, 4.0]) == pytest.approx(
         [low_percent / 100, high_percent / 100], abs=1e-13
     )
+
+
+def test_one_pert_fits_any_two_percents_around_the_median():
+    """The place of the mode between low and high rises with its place in the limits.
+
+    At every pair of whole percents with 50 between them, so the root is the only one.
+    """
+    near = np.geomspace(1e-6, 0.05, 12)
+    modes = np.concatenate([[0.0], near, np.linspace(0.06, 0.94, 45), 1 - near[::-1]])
+    modes = np.append(modes, 1.0)
+    at = {
+        percent: betaincinv(1 + 4 * modes, 5 - 4 * modes, percent / 100)
+        for percent in range(1, 100)
+    }
+    for low in range(1, 51):
+        for high in range(max(50, low + 1), 100):
+            place = (modes - at[low]) / (at[high] - at[low])
+
+            assert np.all(np.diff(place) > 0.0)
+
+
+def test_one_lognormal_fits_two_percents_and_a_mode():
+    """The place of the mode between low and high falls as the spread grows."""
+    for low in range(1, 50):
+        for high in range(low + 1, 100):
+            first, second = ndtri(low / 100), ndtri(high / 100)
+            spread = np.linspace(max(0.0, -second) + 1e-6, -first, 200)
+            lower, upper = np.expm1(spread * first), np.expm1(spread * second)
+            place = (np.expm1(-(spread**2)) - lower) / (upper - lower)
+
+            assert np.all(np.diff(place) < 0.0)
