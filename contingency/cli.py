@@ -156,6 +156,37 @@ def _report(options: argparse.Namespace) -> int:
 # What the commands share
 
 
+def _calibrate(options: argparse.Namespace) -> int:
+    from contingency.assurance.calibration import calibrate
+    from contingency.estimate.history import read_history_file
+    from contingency.results import calibration_object
+
+    projects = [
+        project
+        for project in read_history_file(options.history)
+        if not options.group or project.group == options.group
+    ]
+    result = calibrate(projects)
+    if options.json:
+        _print_json(calibration_object(result))
+        return DONE
+    print(
+        f"{len(projects)} closed projects: final cost over estimate is"
+        f" {result.fit.quantile(50):.2f} at P50 and {result.fit.quantile(80):.2f} at"
+        " P80 for one more."
+    )
+    for record in result.funded:
+        print(f"  {record.sentence}")
+    print("  level   enough   share   95 % interval")
+    for record in result.pictured:
+        print(
+            f"  P{record.percent:02d}  {record.enough:4d} of {record.count:<4d}"
+            f" {100 * record.share:4.0f} %   {100 * record.low:3.0f} % to"
+            f" {100 * record.high:3.0f} %"
+        )
+    return DONE
+
+
 def _attention(findings: Sequence[Finding]) -> int:
     """Return 1 if a stop or an unanswered major stands, else 0."""
     return ATTENTION if any(f.needs_attention for f in findings) else DONE
@@ -171,12 +202,12 @@ def _print_findings(
         f"{len(findings)} finding{'' if len(findings) == 1 else 's'}"
     )
     for finding in findings:
-        answered = "answered" if finding.answer else ""
+        answered = "answered" if finding.is_answered else ""
         label = f"{finding.severity}{', ' + answered if answered else ''}"
         where = f" {finding.where}" if finding.where else ""
         print(f"  {label}: {finding.check}{where}")
         print(f"    {finding.message}")
-        if not finding.answer:
+        if not finding.is_answered:
             print(f"    {finding.todo}")
 
 
@@ -287,6 +318,22 @@ def _parser() -> argparse.ArgumentParser:
     )
     _add_estimate(report)
     _add_report_options(report)
+    calibrate = _command(
+        commands,
+        "calibrate",
+        _calibrate,
+        "test how often levels of closed projects' history would have been enough",
+        "contingency calibrate closed-projects.csv --group quays",
+    )
+    calibrate.add_argument(
+        "history",
+        type=Path,
+        metavar="HISTORY",
+        help="a file of closed projects, as history.csv",
+    )
+    calibrate.add_argument(
+        "--group", metavar="NAME", default="", help="only projects of this group"
+    )
     return parser
 
 

@@ -9,10 +9,13 @@ import json
 from collections.abc import Sequence
 from typing import Any
 
+from contingency.assurance.calibration import Calibration
 from contingency.assurance.evidence import evidence_score
 from contingency.assurance.findings import CheckOutcome, Finding
 from contingency.assurance.material import Material
+from contingency.assurance.outside_view import LognormalFit, outside_view
 from contingency.assurance.robustness import Robustness
+from contingency.estimate.nouns import Answer
 from contingency.setting.allocation import Split
 from contingency.setting.levels import FundingLevel
 from contingency.version import VERSION
@@ -80,6 +83,7 @@ def results_of(
         "funding": None,
         "evidence": _evidence(study),
         "robustness": _robustness(study.robustness),
+        "outside_view": _outside(study),
     }
 
 
@@ -264,12 +268,83 @@ def finding_object(finding: Finding) -> dict[str, Any]:
         "where": finding.where,
         "message": finding.message,
         "source": finding.source,
-        "answer": None
-        if answer is None
-        else {
-            "answer": answer.answer,
-            "by": answer.by,
-            "on": answer.on.isoformat(),
-            "where": answer.where,
+        "answer": None if answer is None else _answer(answer),
+        "rows": list(finding.rows),
+        "row_answers": [_answer(one) for one in finding.row_answers],
+    }
+
+
+def _answer(answer: Answer) -> dict[str, str]:
+    return {
+        "answer": answer.answer,
+        "by": answer.by,
+        "on": answer.on.isoformat(),
+        "where": answer.where,
+    }
+
+
+def calibration_object(result: Calibration) -> dict[str, Any]:
+    """Return the back-test of a history, ready for JSON."""
+    return {
+        "projects": [
+            {
+                "id": project.id,
+                "name": project.name,
+                "ratio": figure(project.ratio),
+                "percent": figure(project.percent),
+            }
+            for project in result.projects
+        ],
+        "fit": _fit(result.fit),
+        "levels": [
+            {
+                "level": f"P{record.percent:02d}",
+                "enough": record.enough,
+                "count": record.count,
+                "interval": [figure(record.low), figure(record.high)],
+            }
+            for record in result.pictured
+        ],
+        "sentences": [record.sentence for record in result.funded],
+    }
+
+
+def _fit(fit: LognormalFit) -> dict[str, Any]:
+    return {
+        "count": fit.count,
+        "log_mean": figure(fit.log_mean),
+        "log_spread": figure(fit.log_spread),
+        "percentiles": {
+            f"P{percent:02d}": figure(fit.quantile(percent))
+            for percent in (10, 50, 80, 90)
         },
+    }
+
+
+def _outside(study: Material) -> dict[str, Any] | None:
+    """Return the outside view, ratios of final cost to base; None without one."""
+    view = outside_view(study)
+    if isinstance(view, str):
+        return None
+    return {
+        "kind": view.kind,
+        "source": view.source,
+        "comparable": dict(
+            zip(("stage", "money", "scope"), view.comparable, strict=True)
+        ),
+        "ratios": [figure(ratio) for ratio in view.ratios],
+        "fit": None if view.fit is None else _fit(view.fit),
+        "points": {f"P{percent:02d}": figure(at) for percent, at in view.points},
+        "positions": [
+            {
+                "name": position.name,
+                "amount": figure(position.amount),
+                "ratio": figure(position.ratio),
+                "percent": [
+                    figure(position.low_percent),
+                    figure(position.high_percent),
+                ],
+            }
+            for position in view.positions
+        ],
     }

@@ -17,6 +17,7 @@ from contingency.assurance.outside_view import (
     LognormalFit,
     fit_lognormal,
 )
+from contingency.assurance.wording import counted
 from contingency.errors import TooFewProjects
 from contingency.estimate.nouns import ClosedProject
 
@@ -111,7 +112,7 @@ def calibrate(projects: Sequence[ClosedProject]) -> Calibration:
     if len(projects) < FEWEST_PROJECTS:
         raise TooFewProjects(
             where="history",
-            found=f"{len(projects)} closed projects are given.",
+            found=f"{counted(len(projects), 'closed project')} given.",
             rule=f"A history is tested from {FEWEST_PROJECTS} projects on.",
             remedy="Add closed projects that are alike in stage, money and scope.",
         )

@@ -16,6 +16,7 @@ from numpy.typing import NDArray
 from scipy.special import stdtr, stdtrit
 
 from contingency.assurance.material import Material
+from contingency.assurance.wording import counted
 from contingency.estimate.nouns import ClosedProject, Estimate, UpliftPart
 from contingency.quantities.percentiles import rank
 
@@ -190,7 +191,7 @@ def outside_view(material: Material) -> OutsideView | str:
     projects = projects_like(estimate)
     if len(projects) < FEWEST_PROJECTS:
         return (
-            f"history.csv has {len(projects)} projects to compare with;"
+            f"history.csv has {counted(len(projects), 'project')} to compare with;"
             f" {FEWEST_PROJECTS} are needed."
         )
     fit = fit_lognormal(projects)

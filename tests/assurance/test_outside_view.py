@@ -1,5 +1,7 @@
 """The outside view and the back-test of a history."""
 
+import json
+
 import numpy as np
 import pytest
 from scipy import stats
@@ -11,6 +13,7 @@ from contingency.assurance.outside_view import (
     fit_lognormal,
     outside_view,
 )
+from contingency.cli import main
 from contingency.errors import TooFewProjects
 from contingency.estimate.nouns import ClosedProject, OutsideRule
 from tests.assurance.builder import ALIKE, OUTSIDE, sound_estimate, spoiled
@@ -177,5 +180,30 @@ def test_a_handful_of_projects_is_not_tested():
     with pytest.raises(TooFewProjects) as raised:
         calibrate(closed(*RATIOS[:7]))
 
-    assert raised.value.found == "7 closed projects are given."
+    assert raised.value.found == "7 closed projects given."
     assert OUTSIDE.is_comparable
+
+
+def test_the_command_prints_the_sentences(tmp_path, capsys):
+    """Of one group of a file; as JSON the same."""
+    path = tmp_path / "closed.csv"
+    rows = [f"H{i},,quays,100,{100 * ratio},," for i, ratio in enumerate(RATIOS)]
+    lines = ["id,name,group,estimate,final,notes", *(row[:-1] for row in rows)]
+    path.write_text("\n".join([*lines, "T1,,tunnels,100,900,"]), encoding="utf-8")
+    sentence = calibrate(closed(*RATIOS)).funded[1].sentence
+
+    assert main(["calibrate", str(path), "--group", "quays"]) == 0
+    assert sentence in capsys.readouterr().out
+    assert main(["calibrate", str(path), "--group", "quays", "--json"]) == 0
+    assert sentence in json.loads(capsys.readouterr().out)["sentences"]
+
+
+def test_the_command_says_what_is_wrong(tmp_path, capsys):
+    """Too few projects are status 1, a file that is not there status 2."""
+    path = tmp_path / "closed.csv"
+    path.write_text("id,estimate,final\nH1,100,110\n", encoding="utf-8")
+
+    assert main(["calibrate", str(path)]) == 1
+    assert "too-few-projects" in capsys.readouterr().err
+    assert main(["calibrate", str(tmp_path / "none.csv")]) == 2
+    assert "file-unreadable" in capsys.readouterr().err
