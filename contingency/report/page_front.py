@@ -133,7 +133,6 @@ class AnswerPage:
     chart: str
     chart_alt: str
     levels: tuple[LevelRow, ...]
-    target_is_listed: bool
     unit: str
     drivers: tuple[TopDriver, ...]
     cautions: tuple[AnswerCaution, ...]
@@ -252,7 +251,6 @@ def answer_page(
             )
             for row in level_rows(study, printed, amounts)[:MOST_LEVELS]
         ),
-        target_is_listed=any(lv.percent == target.percent for lv in study.levels),
         unit=amounts.caption,
         drivers=tuple(_top_driver(driver, amounts) for driver in inputs[:5]),
         cautions=_worst_cautions(study),

@@ -5,8 +5,10 @@ enough, and odd enough, to try every part of a page.
 """
 # ruff: noqa: E501  (rows of a table stay rows)
 
+import dataclasses
 import datetime as dt
 
+from contingency.assurance.findings import CheckOutcome, Finding
 from contingency.estimate.nouns import (
     Answer,
     Assumption,
@@ -341,3 +343,82 @@ def ship_refit():
         ),
         fingerprint="3f9a6c2e7b1d4085a6e2c9174d0b8f53e1a7c6429d5b0f8e3c7a1d6924b8e05f",
     )
+
+
+FINDINGS = (
+    Finding(
+        check="rare-large-events",
+        severity="major",
+        where="R06",
+        message="if R06 happens it costs 12.3 million; P80 holds 0.1 million of that.",
+        todo="Decide who holds the rest.",
+        source="a guide that was read [passage read]",
+        answer=ANSWERS[0],
+    ),
+    Finding(
+        check="ranges-without-evidence",
+        severity="major",
+        where="",
+        message="Two ranges have no reference: D330, S430.",
+        todo="Name a source.",
+        source="common practice, no source",
+        rows=("D330", "S430"),
+        row_answers=(
+            Answer(
+                check="ranges-without-evidence",
+                where="S430",
+                answer="Rates of the last ship.",
+                by="Science lead",
+                on=DAY,
+            ),
+        ),
+    ),
+    Finding(
+        check="no-scope",
+        severity="stop",
+        where="",
+        message="Something stands in the way",
+        todo="Take it away.",
+        source="common practice, no source",
+    ),
+    Finding(
+        check="copied-ranges",
+        severity="caution",
+        where="",
+        message="five packages share a range",
+        todo="Say what makes them equally uncertain.",
+        source="a guide that was read [passage read]",
+    ),
+    Finding(
+        check="events-that-occurred",
+        severity="note",
+        where="R18",
+        message="R18 has happened.",
+        todo="Nothing.",
+        source="common practice, no source",
+    ),
+)
+"""One finding of each kind, with and without answers."""
+
+CHECKS_RUN = (
+    CheckOutcome(
+        check="rare-large-events",
+        title="Rare but large events",
+        outcome="finding",
+        threshold="an event is large above: 25 % of the contingency (D: computed)",
+    ),
+    CheckOutcome(check="copied-ranges", title="Copied ranges", outcome="finding"),
+    CheckOutcome(check="no-systemic-layer", title="No systemic risks", outcome="pass"),
+    CheckOutcome(
+        check="outside-view",
+        title="The outside view",
+        outcome="not-applicable",
+        reason="There is no history.csv.",
+    ),
+)
+"""One outcome of each kind."""
+
+
+def with_fixed_findings(study):
+    """The study with findings and checks that do not change with the registry."""
+    return dataclasses.replace(study, findings=FINDINGS, checks_run=CHECKS_RUN)

@@ -1,0 +1,319 @@
+"""The page context: golden, complete, and used to the last field."""
+
+import dataclasses
+import json
+from pathlib import Path
+
+import pytest
+from jinja2 import nodes
+
+from contingency.estimate.nouns import (
+    ContingencyRule,
+    CostRange,
+    PairCorrelation,
+    Statements,
+)
+from contingency.report.folder import ENTRY, render_html, sandbox, templates_folder
+from contingency.report.page_front import sign_off_rows
+from contingency.report.page_inputs import entered_step
+from contingency.report.pages import Report, make_pages
+from contingency.results import as_json
+from contingency.study import run_study
+from tests.report.conftest import CREATED
+from tests.report.ship_refit import ship_refit, with_fixed_findings
+
+FOLDER = templates_folder()
+
+
+def pages_of(study, look, *, draft=True):
+    """The pages of a study with its results as the only file."""
+    files = {"results.json": ("Results", as_json(study.results()))}
+    return make_pages(study, look, created=CREATED, draft=draft, files=files)
+
+
+def bare():
+    """One fixed package and nothing else: every part of a page that may be empty."""
+    refit = ship_refit()
+    package = refit.packages[0].model_copy(
+        update={
+            "cost": CostRange(shape="fixed", likely=2_150_000.0),
+            "loads": (),
+            "group": "",
+        }
+    )
+    return refit.model_copy(
+        update={
+            "packages": (package,),
+            "systemic": (),
+            "events": (),
+            "causes": (),
+            "statements": Statements(),
+            "sign_offs": (),
+            "answers": (),
+            "gate": "",
+            "previous": "",
+            "contingency": ContingencyRule(target=80),
+        }
+    )
+
+
+def correlated():
+    """Correlations in place of causes, and every shape there is."""
+    refit = ship_refit()
+    shapes = {
+        "H100": CostRange(shape="triangular", low=2e6, likely=2.15e6, high=2.6e6),
+        "H110": CostRange(shape="uniform", low=3e6, high=4.4e6),
+        "H120": CostRange(
+            shape="normal", low=1e6, high=1.5e6, ends=refit.packages[0].cost.ends
+        ),
+        "H130": CostRange(
+            shape="lognormal", low=3.9e6, high=4.9e6, ends=refit.packages[0].cost.ends
+        ),
+        "H140": CostRange(
+            shape="discrete",
+            outcomes=((0.9e6, 0.4), (1.3e6, 0.6)),
+            written=("", "", "", "900000:0.4; 1300000:0.6"),
+        ),
+        "M200": CostRange(
+            shape="points",
+            outcomes=((5.0, 8.6e6), (50.0, 8.9e6), (95.0, 9.9e6)),
+            written=("", "", "", "P05=8600000; P50=8900000; P95=9900000"),
+        ),
+    }
+    return refit.model_copy(
+        update={
+            "packages": tuple(
+                p.model_copy(update={"loads": (), "cost": shapes.get(p.id, p.cost)})
+                for p in refit.packages
+            ),
+            "causes": (),
+            "general_dependence": None,
+            "correlations": (
+                PairCorrelation(a="H100", b="H110", correlation=0.9, line=2),
+                PairCorrelation(a="H110", b="H120", correlation=0.9, line=3),
+                PairCorrelation(a="H100", b="H120", correlation=-0.6, line=4),
+            ),
+        }
+    )
+
+
+@pytest.fixture(scope="module")
+def studies(refit):
+    """Three studies that between them fill every part of every page."""
+    return [
+        with_fixed_findings(refit),
+        run_study(bare()),
+        run_study(correlated()),
+    ]
+
+
+def test_the_context_of_the_refit_is_the_golden_one(refit, look, golden):
+    """Every word and every figure that the templates may show."""
+    results = {
+        "tool": {"name": "contingency", "version": "1.2.3"},
+        "run": {"method": "contingency-method/1"},
+    }
+    files = {
+        "packages.csv": ("Input file of the estimate", b"id,name\n"),
+        "results.json": ("Results, unrounded", json.dumps(results).encode()),
+    }
+    pages = make_pages(
+        with_fixed_findings(refit), look, created=CREATED, draft=True, files=files
+    )
+    report = dataclasses.asdict(pages.report)
+    text = json.dumps(report, indent=1, ensure_ascii=False) + "\n"
+
+    golden(text, "ship_refit/context.json")
+
+
+def test_a_context_holds_words_and_no_numbers(refit, look):
+    """So a template has nothing to round or to add up."""
+
+    def leaves(value):
+        if isinstance(value, dict):
+            for inner in value.values():
+                yield from leaves(inner)
+        elif isinstance(value, list | tuple):
+            for inner in value:
+                yield from leaves(inner)
+        else:
+            yield value
+
+    report = dataclasses.asdict(pages_of(refit, look).report)
+
+    assert {type(leaf) for leaf in leaves(report)} <= {str, bool, type(None)}
+
+
+def contexts():
+    """Every dataclass of the page context, found through the fields of `Report`."""
+    found, waiting = set(), [Report]
+    modules = {}
+    while waiting:
+        one = waiting.pop()
+        if one in found:
+            continue
+        found.add(one)
+        modules.update(vars(__import__(one.__module__, fromlist=["x"])))
+        for field in dataclasses.fields(one):
+            for name in str(field.type).replace("[", " ").replace("]", " ").split():
+                kind = modules.get(name.strip(",."))
+                if dataclasses.is_dataclass(kind):
+                    waiting.append(kind)
+    return found
+
+
+def test_templates_use_exactly_the_fields_of_the_context(studies, look):
+    """No field is made for nothing, and none is asked for that there is not."""
+    environment = sandbox(FOLDER)
+    plain, used = environment.getattr, set()
+
+    def noted(thing, name):
+        if dataclasses.is_dataclass(thing):
+            used.add((type(thing).__name__, name))
+        return plain(thing, name)
+
+    environment.getattr = noted
+    for study in studies:
+        for draft in (True, False):
+            pages = pages_of(study, look, draft=draft)
+            environment.get_template(ENTRY).render(report=pages.report)
+    there = {
+        (one.__name__, field.name)
+        for one in contexts()
+        for field in dataclasses.fields(one)
+    }
+
+    assert used - there == set(), "asked for and not there"
+    assert there - used == EXPLAINED, "there and never asked for"
+
+
+EXPLAINED = {
+    # Charts are drawn with these two; the style sheet has no use for them.
+    ("Colours", "pale"),
+    ("Colours", "draft"),
+}
+
+
+def test_templates_do_no_arithmetic():
+    """No sum, product, rounding or counting of anything that is printed."""
+    environment = sandbox(FOLDER)
+    allowed_filters = {"length"}
+    arithmetic = (
+        nodes.Add,
+        nodes.Sub,
+        nodes.Mul,
+        nodes.Div,
+        nodes.FloorDiv,
+        nodes.Mod,
+        nodes.Pow,
+    )
+    for path in sorted(FOLDER.glob("*.html")):
+        tree = environment.parse(path.read_text(encoding="utf-8"))
+        assert not list(tree.find_all(arithmetic)), path.name
+        filters = {one.name for one in tree.find_all(nodes.Filter)}
+        assert filters <= allowed_filters, path.name
+
+
+def test_every_template_is_included_once():
+    """A page that nobody includes would never be seen to be wrong."""
+    text = (FOLDER / ENTRY).read_text(encoding="utf-8")
+    pages = {path.name for path in FOLDER.glob("*.html")} - {ENTRY}
+
+    for name in pages:
+        assert text.count(f'{{% include "{name}" %}}') == 1, name
+
+
+def test_contents_name_every_chapter_in_order():
+    """With the words of its heading, and a link that leads to it."""
+    import re
+
+    contents = (FOLDER / "contents.html").read_text(encoding="utf-8")
+    links = re.findall(r'<a href="#([\w-]+)">([^<]+)</a>', contents)
+    included = re.findall(
+        r'include "([\w-]+\.html)"', (FOLDER / ENTRY).read_text(encoding="utf-8")
+    )
+    headings = []
+    for name in included:
+        text = (FOLDER / name).read_text(encoding="utf-8")
+        headings += re.findall(r'<h1[^>]* id="([\w-]+)">([^<]+)</h1>', text)
+    headings = [pair for pair in headings if pair[0] != "contents"]
+
+    assert [anchor for anchor, _ in links] == [anchor for anchor, _ in headings]
+    for (_, link), (_, heading) in zip(links, headings, strict=True):
+        assert heading.startswith(link), link
+
+
+def test_what_is_typed_cannot_become_markup(refit, look):
+    """A name with angle brackets is shown as it is written."""
+    estimate = ship_refit().model_copy(
+        update={"project": 'Refit <b onclick="x">&amp;</b> {{ 7 * 7 }} \x3cscript\x3e'}
+    )
+    study = dataclasses.replace(refit, estimate=estimate)
+    text = render_html(pages_of(study, look).report, FOLDER)
+
+    assert "<script" not in text
+    assert "<b onclick" not in text
+    assert "{{ 7 * 7 }}" in text
+
+
+@pytest.mark.parametrize(
+    ("roles", "fields"),
+    [
+        ((), ["sig_prepared", "sig_checked", "sig_approved"]),
+        (
+            ("prepared", "risk owner", "checked", "approved", "approved"),
+            [
+                "sig_prepared",
+                "sig_risk_owner",
+                "sig_checked",
+                "sig_approved",
+                "sig_approved_2",
+            ],
+        ),
+    ],
+)
+def test_every_role_has_a_field_of_its_own(roles, fields):
+    """Also the roles that every report needs and nobody named."""
+    from contingency.estimate.nouns import SignOffLine
+
+    rows = sign_off_rows(tuple(SignOffLine(role=role) for role in roles))
+
+    assert [row.field for row in rows] == fields
+
+
+@pytest.mark.parametrize(
+    ("base", "step", "entered"),
+    [
+        (2_150_000.0, 1000.0, 1000.0),
+        (2_150_000.0, 100_000.0, 1000.0),
+        (2_150_500.0, 1000.0, 100.0),
+        (2_150_501.0, 1000.0, 1.0),
+        (2_150_501.25, 1000.0, 0.01),
+        (2_150_000.0, 1.0, 1.0),
+    ],
+)
+def test_inputs_are_shown_as_exactly_as_they_were_entered(base, step, entered):
+    """However coarsely the results are rounded."""
+    refit = ship_refit()
+    package = refit.packages[0].model_copy(update={"base": base})
+    estimate = refit.model_copy(update={"packages": (package,), "events": ()})
+
+    assert entered_step(estimate, step) == entered
+
+
+def test_the_worst_cautions_come_first(refit, look):
+    """Stops before majors before cautions, open before answered; never a note."""
+    pages = pages_of(with_fixed_findings(refit), look)
+    marks = [one.mark for one in pages.report.answer.cautions]
+    none = dataclasses.replace(refit, findings=())
+    stated = [one.mark for one in pages_of(none, look).report.answer.cautions]
+
+    assert marks == ["Stop", "Major", "Major, answered"]
+    assert stated == ["Stated", "Stated"]
+
+
+def test_no_machine_path_reaches_the_context(refit, look):
+    """The report is the same wherever it is made."""
+    report = json.dumps(dataclasses.asdict(pages_of(refit, look).report))
+
+    assert str(Path.cwd()) not in report
