@@ -27,6 +27,7 @@ from contingency.quantities.shapes import (
     Normal,
     Points,
     Shape,
+    standard_shape,
 )
 
 Array = NDArray[np.float64]
@@ -85,7 +86,9 @@ def _tabulate(shapes: Sequence[Shape]) -> _Tables:
             continue
         key, location, scale = form
         if key not in shared:
-            shared[key] = (knots(shape) - location) / scale
+            # From the key and not from this shape, which differs by rounding from
+            # the next one with the key: a row must not depend on its neighbours.
+            shared[key] = knots(standard_shape(key))
         row[:] = location + scale * shared[key]
     rise = np.zeros_like(rows)
     rise[:, :-1] = np.diff(rows, axis=1)

@@ -12,6 +12,7 @@ from scipy.integrate import quad
 from scipy.interpolate import PchipInterpolator
 from scipy.special import ndtr, ndtri
 
+from contingency.quantities.curves import Curves
 from contingency.quantities.shapes import (
     BetaPert,
     Discrete,
@@ -408,6 +409,23 @@ def test_ranges_alike_in_percent_share_one_key():
         keys.add(shape.standard_form()[0])
 
     assert len(keys) == 1
+
+
+def test_a_table_does_not_depend_on_the_shapes_beside_it():
+    """Two ranges with one key differ by rounding; each reads the same bits alone."""
+    first, second = (
+        BetaPert(low=0.9 * base, likely=base, high=1.37 * base)
+        for base in (733.1, 1_234_567.89)
+    )
+    assert first.standard_form()[0] == second.standard_form()[0]
+
+    def read(shapes, wanted):
+        curves = Curves(shapes)
+        values = np.empty((len(shapes), SCORES.size))
+        curves.read(np.tile(SCORES, (len(shapes), 1)), 0, values)
+        return values[curves.order.index(shapes.index(wanted))]
+
+    assert np.array_equal(read([first, second], second), read([second], second))
 
 
 def test_an_unknown_key_is_refused():
