@@ -142,7 +142,7 @@ class RecordError(ContingencyError):
     slug = "record-error"
 
 
-class DamagedRecord(RecordError):
+class DamagedRecord(RecordError, InputError):
     """A file that this program keeps was changed by hand or cut short."""
 
     slug = "damaged-record"
@@ -154,13 +154,13 @@ class BusyRecord(RecordError):
     slug = "busy-record"
 
 
-class NoSuchRole(RecordError):
+class NoSuchRole(RecordError, InputError):
     """A sign-off in a role that the estimate does not name."""
 
     slug = "no-such-role"
 
 
-class OtherSignatory(RecordError):
+class OtherSignatory(RecordError, InputError):
     """A sign-off by someone else than the person named for the role."""
 
     slug = "other-signatory"
@@ -176,6 +176,12 @@ class SignOffOutOfTurn(RecordError):
     """A sign-off before the roles ahead of it have signed the same content."""
 
     slug = "sign-off-out-of-turn"
+
+
+class SignOffBlocked(RecordError):
+    """A stop stands, or a cross-check failed: nobody can sign such a report."""
+
+    slug = "sign-off-blocked"
 
 
 class IssueRefused(RecordError):
@@ -207,7 +213,7 @@ class FolderInTheWay(RecordError):
     slug = "folder-in-the-way"
 
 
-class UnreadableReport(RecordError):
+class UnreadableReport(RecordError, InputError):
     """A PDF that cannot be taken apart within the limits set for it."""
 
     slug = "unreadable-report"
@@ -219,7 +225,19 @@ class TookTooLong(RecordError):
     slug = "took-too-long"
 
 
-class NoSealField(RecordError):
+class UnusablePath(RecordError, InputError):
+    """A file that a command was given cannot be read, or stands in the way."""
+
+    slug = "unusable-path"
+
+
+class NotIssued(RecordError, InputError):
+    """A seal was asked for on a PDF that was never issued, such as a draft."""
+
+    slug = "not-issued"
+
+
+class NoSealField(RecordError, InputError):
     """The PDF has no field for a seal in that role."""
 
     slug = "no-seal-field"
@@ -237,13 +255,13 @@ class BrokenSeal(RecordError):
     slug = "broken-seal"
 
 
-class WrongPassword(RecordError):
+class WrongPassword(RecordError, InputError):
     """The certificate file does not open with the password given."""
 
     slug = "wrong-password"
 
 
-class UnfitCertificate(RecordError):
+class UnfitCertificate(RecordError, InputError):
     """The certificate is expired, not yet valid, or not made for signing."""
 
     slug = "unfit-certificate"
@@ -319,3 +337,48 @@ class AttachmentNameTaken(ReportError):
     """Two files would be attached to a report under one name."""
 
     slug = "attachment-name-taken"
+
+
+# --- Revisions: comparing, the chain of previous revisions ---------------------------
+
+
+class RevisionError(InputError):
+    """Two estimates, or a chain of them, cannot be put in one history."""
+
+    slug = "revision-error"
+
+
+class OtherCurrency(RevisionError):
+    """Two revisions in different currencies."""
+
+    slug = "other-currency"
+
+
+class NotRevisions(RevisionError):
+    """Two estimates that have no package in common."""
+
+    slug = "not-revisions"
+
+
+class NoPrevious(RevisionError):
+    """The folder that `previous` names is not there or cannot be read."""
+
+    slug = "no-previous"
+
+
+class RevisionCircle(RevisionError):
+    """Revisions that each name the other as the one before."""
+
+    slug = "revision-circle"
+
+
+class NoAccount(RevisionError):
+    """An estimate without drawdown.csv whose account is asked for."""
+
+    slug = "no-account"
+
+
+class NotFinished(RevisionError):
+    """A close-out of a project that is not finished."""
+
+    slug = "not-finished"

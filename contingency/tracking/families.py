@@ -85,7 +85,8 @@ _MEANINGS: dict[Family, str] = {
     Family.RANGES: "Ranges relative to the base that they belong to.",
     Family.DEPENDENCE: "General dependence, common causes, loads and correlations.",
     Family.SYSTEMIC: "Systemic risks new, gone or changed.",
-    Family.TREATMENT: "Events now counted after treatment, and the treatment's cost.",
+    Family.TREATMENT: "Events counted after treatment, or no longer, and what the "
+    "treatment costs.",
     Family.REASSESSED: "Open events with another chance or impact.",
     Family.NEW_EVENTS: "Events opened, or opened again.",
     Family.CLOSED_EVENTS: "Events that can no longer happen.",

@@ -76,8 +76,8 @@ def event_family(
         return None
     lines = lines_about(match, "events", (event.id,))
     declared = any(line.family == TREATMENT for line in lines)
-    treated = before.use == "before" and after.use == "after"
-    return Family.TREATMENT if treated or declared else Family.REASSESSED
+    turned = before.use != after.use
+    return Family.TREATMENT if turned or declared else Family.REASSESSED
 
 
 def _common_events(match: Match) -> set[str]:

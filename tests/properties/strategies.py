@@ -3,7 +3,10 @@
 from hypothesis import strategies as st
 
 from contingency.errors import NoSuchCurve
+from contingency.estimate.changes import BASE_FAMILIES
+from contingency.estimate.nouns import ContingencyRule, Run
 from contingency.quantities.shapes import from_range
+from tests.tracking import pairs
 
 scales = st.sampled_from([1e-6, 0.01, 1.0, 37.0, 1e5, 2.5e9])
 """Units of money or fractions."""
@@ -123,3 +126,96 @@ def wished_correlations(draw):
         for j in range(i):
             matrix[i][j] = matrix[j][i] = draw(st.integers(-100, 100)) / 100
     return matrix
+
+
+# --------------------------------------------------------------------------------------
+# Revisions
+
+ratios = st.sampled_from([0.0, 0.4, 0.9, 1.0, 1.1, 2.5, 9.0])
+"""By how much a base moves."""
+lows = st.sampled_from([0.7, 0.9])
+highs = st.sampled_from([1.1, 1.3, 2.0])
+base_families = st.sampled_from(["", *BASE_FAMILIES])
+
+
+@st.composite
+def package_edits(draw, before):
+    """A package as a later revision may have it; None where it has gone."""
+    if draw(st.integers(0, 7)) == 0:
+        return None
+    base = round(before.base * draw(ratios), 2)
+    spent = round(base * draw(st.sampled_from([0.0, 0.0, 0.3, 1.0])), 2)
+    new = pairs.package(before.id, base, draw(lows), draw(highs), spent=spent or None)
+    if draw(st.booleans()):
+        # The same range, written in money.
+        new = new.model_copy(
+            update={"cost": new.cost.model_copy(update={"written": ("",) * 4})}
+        )
+    if draw(st.booleans()):
+        new = new.model_copy(update={"loads": (pairs.load("crew", 0.5),)})
+    return new
+
+
+@st.composite
+def event_edits(draw, before):
+    """An event as a later revision may have it; None where it has gone."""
+    status = draw(st.sampled_from(["open", "open", "open", "closed", "occurred"]))
+    if draw(st.integers(0, 7)) == 0:
+        return None
+    return before.model_copy(
+        update={
+            "status": status,
+            "probability": draw(st.sampled_from([0.0, 0.05, 0.3, 0.5])),
+            "kind": draw(st.sampled_from(["threat", "opportunity"])),
+            "use": draw(st.sampled_from(["before", "after"])),
+            "after_probability": 0.1,
+            "after_impact": before.impact,
+        }
+    )
+
+
+@st.composite
+def tied_events(draw, events):
+    """Events of which some require or exclude one another, as the reader allows."""
+    rows = {event.id: event for event in events}
+    first, last = rows.get("E1"), rows.get("E8")
+    tie = draw(st.sampled_from(["", "requires", "excludes"]))
+    if first is None or last is None or not tie:
+        return events
+    if tie == "excludes" and "occurred" not in {first.status, last.status}:
+        rows["E1"] = first.model_copy(update={"excludes": ("E8",)})
+        rows["E8"] = last.model_copy(update={"excludes": ("E1",)})
+    elif tie == "requires" and not (first.status == "closed" and last.is_open):
+        rows["E8"] = last.model_copy(update={"requires": "E1"})
+    return tuple(rows.values())
+
+
+@st.composite
+def revisions(draw):
+    """An estimate with anything moved, and lines of changes.csv for some of it."""
+    edited = [draw(package_edits(p)) or p for p in pairs.PACKAGES[:1]]
+    edited += [draw(package_edits(p)) for p in pairs.PACKAGES[1:]]
+    packages = [p for p in edited if p is not None]
+    packages.append(pairs.package("P9", 250.0))
+    events = [draw(event_edits(e)) for e in (*pairs.EVENTS, pairs.event("E8", 0.2))]
+    ids = tuple(p.id for p in packages)
+    lines = [
+        pairs.change(id=i, family=draw(base_families), line=n, amount=amount)
+        for n, i in enumerate((*ids, "P2"), start=2)
+        if (amount := draw(st.sampled_from([None, None, 12.5, -80.0]))) or n < 4
+    ]
+    return pairs.estimate(
+        revision="B",
+        packages=tuple(packages),
+        events=draw(tied_events(tuple(e for e in events if e is not None))),
+        systemic=draw(st.sampled_from([(), (pairs.systemic(high=0.2, packages=ids),)])),
+        causes=(pairs.cause("crew"),),
+        general_dependence=draw(st.sampled_from([None, 0.0, 0.3, 0.6])),
+        contingency=ContingencyRule(target=draw(st.sampled_from([50, 80, 95]))),
+        price_date=draw(st.sampled_from([pairs.DAY, pairs.DAY.replace(year=2028)])),
+        run=Run(seed=draw(st.integers(0, 3)), tolerance=0.5, least=8192, most=8192),
+        changes=(
+            *lines,
+            pairs.change(file="estimate", family="prices", factor=1.04, line=99),
+        ),
+    )
