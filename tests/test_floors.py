@@ -32,7 +32,8 @@ FLOORS = {
     "record": GROUND,
     "verify": STUDY | {"report", "record"},
     "publish": STUDY | {"report"},
-    "cli": STUDY | {"report", "record", "verify", "publish"},
+    "office": STUDY | {"report", "record", "verify", "publish"},
+    "cli": STUDY | {"report", "record", "verify", "publish", "office"},
     "__main__": {"cli"},
 }
 

@@ -73,7 +73,9 @@ def form_faults(signature: bytes) -> tuple[str, ...]:
     if signed["version"].native != "v1":
         faults.append("its version is another")
     faults += _unsigned_faults(signed["signer_infos"][0])
-    if not all(_is_der(part) for part in _parts(signed)):
+    # A time stamp was made elsewhere, in whatever form of ASN.1, and is left out.
+    beside = signed["signer_infos"][0]["unsigned_attrs"].dump()
+    if not _is_der(signature, leaving_out=beside):
         faults.append("it is not written in the one form of DER")
     return tuple(faults)
 
@@ -211,36 +213,19 @@ def _unsigned_faults(signer: Any) -> Iterator[str]:  # noqa: ANN401
         yield "something stands beside its time stamp"
 
 
-def _parts(signed: Any) -> Iterator[bytes]:  # noqa: ANN401
-    """Give a signature part by part, as it was read.
-
-    Its time stamp was made elsewhere, in whatever form of ASN.1, and is left out.
-    """
-    (signer,) = signed["signer_infos"]
-    for key in ("version", "digest_algorithms", "encap_content_info", "certificates"):
-        yield signed[key].dump()
-    for key in (
-        "version",
-        "sid",
-        "digest_algorithm",
-        "signed_attrs",
-        "signature_algorithm",
-        "signature",
-    ):
-        yield signer[key].dump()
-
-
-def _is_der(part: bytes) -> bool:
+def _is_der(part: bytes, *, leaving_out: bytes) -> bool:
     """Whether lengths are definite and as short as can be, all the way down."""
     place = 0
     while place < len(part):
         size = _length(part[place:])
-        if size is None or part[place] & 0x1F == 0x1F:
+        tag = part[place]
+        if size is None or tag == 0 or tag & 0x1F == 0x1F:
             return False
-        head = 2 + (part[place + 1] & 0x7F if part[place + 1] > 0x7F else 0)
-        inside = part[place + head : place + size]
-        if part[place] & 0x20 and not _is_der(inside):
-            return False
+        whole = part[place : place + size]
+        if tag & 0x20 and whole != leaving_out:
+            head = 2 + (whole[1] & 0x7F if whole[1] > 0x7F else 0)
+            if not _is_der(whole[head:], leaving_out=leaving_out):
+                return False
         place += size
     return True
 

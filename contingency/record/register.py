@@ -154,6 +154,21 @@ def issue(
     return entry
 
 
+def refuse_taken(records: Path, *, project: str, revision: str, reason: str) -> None:
+    """Clear up after a crash, and refuse at once what `issue` would refuse later.
+
+    Raises
+    ------
+    AlreadyIssued, FolderInTheWay, DamagedRecord, BusyRecord
+        As `issue`.
+    """
+    with held(records / f".{FILE}.lock", what=str(records / FILE)):
+        found = _unbroken(read_register(_register_bytes(records)), records)
+        clear_up(records, found)
+        never = dt.datetime.min.replace(tzinfo=dt.UTC)
+        _place(records, found, project, revision, reason, never)
+
+
 def clear_up(records: Path, register: Register) -> None:
     """Finish or remove what a crash left; only under the lock of the register."""
     (records / f".{FILE}.next").unlink(missing_ok=True)
