@@ -1,4 +1,4 @@
-"""Time and memory of the engine against trials and inputs.
+"""Time of the engine, and memory of a whole study, against trials and inputs.
 
     python -m pytest tests/benchmarks/test_growth.py -m benchmark -s
 
@@ -16,13 +16,14 @@ pytestmark = pytest.mark.benchmark
 
 ONE_RUN = """\
 import resource, sys, time
-from contingency import read_estimate
+from contingency import read_estimate, run_study
 from contingency.simulation import simulate
 
 estimate = read_estimate(sys.argv[1])
 start = time.perf_counter()
 trials = simulate(estimate, threads=2).trials
 seconds = time.perf_counter() - start
+run_study(estimate, threads=2).results()
 megabytes = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024
 print(trials, seconds, megabytes)
 """
