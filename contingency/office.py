@@ -12,6 +12,7 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from hashlib import sha256
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from contingency.errors import (
     BrokenSeal,
@@ -39,6 +40,9 @@ from contingency.study import Study, run_study
 from contingency.verify.report import Limits, verify_report
 from contingency.verify.verification import Verification
 from contingency.version import VERSION
+
+if TYPE_CHECKING:
+    from contingency.report.page_front import TypedSignOff
 
 RESULTS = "results.json"
 
@@ -186,6 +190,42 @@ def sign_off_standings(
     return sign_offs.standings(given, roles=roles, content=content)
 
 
+def typed_words(standings: Sequence[RoleStanding]) -> tuple[TypedSignOff, ...]:
+    """Return sign-offs as a report prints them: when, standing, conditions, comment."""
+    from contingency.report.page_front import TypedSignOff
+    from contingency.report.wording import date, sentence
+
+    typed = []
+    for line in standings:
+        one = line.sign_off
+        if one is None:
+            continue
+        day = date(one.signed_at.date())
+        if line.standing == "lapsed":
+            noticed = f", noticed on {date(line.since.date())}" if line.since else ""
+            stands = (
+                f"Signed on {day}; lapsed: {', '.join(line.changed)} changed "
+                f"since{noticed}."
+            )
+        elif line.results_compared:
+            stands = f"Signed on {day} for these inputs and results."
+        else:
+            stands = f"Signed on {day} for these inputs."
+        extra = [("Condition", one.conditions), ("Comment", one.comment)]
+        typed.append(
+            TypedSignOff(
+                role=one.role,
+                name=one.name,
+                position=one.position,
+                statements=(
+                    stands,
+                    *(f"{what}: {sentence(words)}" for what, words in extra if words),
+                ),
+            )
+        )
+    return tuple(typed)
+
+
 def roles_of(estimate: Estimate) -> tuple[Role, ...]:
     """Return the roles of an estimate in their order, the required ones included."""
     return sign_offs.roles_in_order(
@@ -319,6 +359,7 @@ def _issued_files(
         draft=False,
         results=results,
         extra_attachments=extra,
+        typed=typed_words(standings),
     )
     return register.IssuedFiles(
         files={REPORT: pdf, RESULTS: results, **tables(study)},

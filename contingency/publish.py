@@ -11,6 +11,7 @@ from datetime import datetime
 from pathlib import Path
 
 from contingency.errors import CrossCheckFailed, OutputBlocked
+from contingency.report.page_front import TypedSignOff
 from contingency.report.pdf import write_report
 from contingency.results import as_json, figure
 from contingency.study import Study
@@ -26,11 +27,12 @@ def publish_report(
     created: datetime,
     templates: Path | None = None,
     say: Callable[[str], None] | None = None,
+    typed: Sequence[TypedSignOff] = (),
 ) -> tuple[Path, ...]:
     """Write the draft report, results.json and the CSV tables; return their paths.
 
     Everything is made before anything is written, and each file appears whole.  A
-    draft of the same name is replaced.
+    draft of the same name is replaced.  `typed` are the sign-offs given so far.
 
     Raises
     ------
@@ -44,7 +46,12 @@ def publish_report(
     results = as_json(study.results())
     say("Laying out the report")
     pdf = write_report(
-        study, templates=templates, created=created, draft=True, results=results
+        study,
+        templates=templates,
+        created=created,
+        draft=True,
+        results=results,
+        typed=typed,
     )
     say("")
     files = {REPORT: pdf, RESULTS: results, **tables(study)}

@@ -52,6 +52,19 @@ class SignOffRow:
     """Name of the signature field in the PDF."""
     field_title: str
     """What the field is, for readers who hear the form."""
+    statements: tuple[str, ...] = ()
+    """What the typed sign-off says: when, whether it stands, conditions, comment."""
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class TypedSignOff:
+    """A typed sign-off as the report shows it; a record, not a signature."""
+
+    role: str
+    name: str
+    position: str
+    statements: tuple[str, ...]
+    """Sentences, as they are printed."""
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -140,7 +153,14 @@ class AnswerPage:
     """How many findings need attention, in words."""
 
 
-def title_page(study: Study, *, draft: bool, issued_on: str, tool: str) -> TitlePage:
+def title_page(
+    study: Study,
+    *,
+    draft: bool,
+    issued_on: str,
+    tool: str,
+    typed: tuple[TypedSignOff, ...] = (),
+) -> TitlePage:
     """Return the title page; `issued_on` is the day of the report in words."""
     estimate = study.estimate
     status = "Draft for review" if draft else "Issued"
@@ -167,7 +187,7 @@ def title_page(study: Study, *, draft: bool, issued_on: str, tool: str) -> Title
         status=status,
         facts=tuple(Fact(name=name, words=words) for name, words in facts),
         fingerprint=grouped_fingerprint(estimate.fingerprint),
-        sign_offs=sign_off_rows(estimate.sign_offs),
+        sign_offs=sign_off_rows(estimate.sign_offs, typed),
         running_title=clipped(estimate.project, 70),
         running_reference=f"Revision {clipped(estimate.revision, 24)}  ·  {status}  ·  "
         f"Inputs {short_fingerprint(estimate.fingerprint)}",
@@ -178,8 +198,11 @@ def _class_words(estimate_class: int | None) -> str:
     return NOTHING if estimate_class is None else f"Class {estimate_class}"
 
 
-def sign_off_rows(lines: tuple[SignOffLine, ...]) -> tuple[SignOffRow, ...]:
+def sign_off_rows(
+    lines: tuple[SignOffLine, ...], typed: tuple[TypedSignOff, ...] = ()
+) -> tuple[SignOffRow, ...]:
     """Return the sign-off block; each line has a field of its own for a seal."""
+    given = {one.role: one for one in typed}
     named = {line.role for line in lines}
     every = [
         *lines,
@@ -190,14 +213,16 @@ def sign_off_rows(lines: tuple[SignOffLine, ...]) -> tuple[SignOffRow, ...]:
     for line in every:
         stem = "sig_" + re.sub(r"[^a-z0-9]+", "_", line.role.lower()).strip("_")
         taken[stem] = taken.get(stem, 0) + 1
+        signed = given.get(line.role)
+        name = signed.name if signed else line.name
         rows.append(
             SignOffRow(
                 role=line.role[:1].upper() + line.role[1:],
-                name=line.name or NOTHING,
-                position=line.position,
+                name=name or NOTHING,
+                position=signed.position if signed else line.position,
+                statements=signed.statements if signed else (),
                 field=stem if taken[stem] == 1 else f"{stem}_{taken[stem]}",
-                field_title=f"Signature field: {line.role}, "
-                f"{line.name or 'no name given'}",
+                field_title=f"Signature field: {line.role}, {name or 'no name given'}",
             )
         )
     return tuple(rows)

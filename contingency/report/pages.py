@@ -33,6 +33,7 @@ from contingency.report.page_assurance import (
 from contingency.report.page_front import (
     AnswerPage,
     TitlePage,
+    TypedSignOff,
     answer_page,
     title_page,
 )
@@ -106,6 +107,7 @@ def make_pages(
     created: dt.datetime,
     draft: bool,
     files: dict[str, tuple[str, bytes]],
+    typed: tuple[TypedSignOff, ...] = (),
 ) -> Pages:
     """Return the pages of a report.
 
@@ -115,6 +117,8 @@ def make_pages(
         When the report is made, with its time zone.
     files : dict
         Name to what it is and its bytes, `results.json` among them.
+    typed : tuple of TypedSignOff
+        Sign-offs given by name, any order.
     """
     estimate = study.estimate
     step = estimate.contingency.rounding
@@ -155,6 +159,7 @@ def make_pages(
             draft=draft,
             issued_on=date(moment.date()),
             tool=f"{tool['name']} {tool['version']}",
+            typed=typed,
         ),
         answer=answer_page(study, printed, amounts, charts["composition"]),
         scope=scope_page(estimate),

@@ -14,6 +14,7 @@ from contingency.errors import AttachmentNameTaken, CharacterWithoutFont
 from contingency.report.draft_mark import draft_marks
 from contingency.report.folder import render_html, templates_folder
 from contingency.report.look import characters_of, read_look
+from contingency.report.page_front import TypedSignOff
 from contingency.report.pages import make_pages
 from contingency.report.typesetting import AttachedFile, Shelf, set_pages
 from contingency.study import Study
@@ -30,6 +31,7 @@ def write_report(
     draft: bool = True,
     results: bytes,
     extra_attachments: Iterable[AttachedFile] = (),
+    typed: Iterable[TypedSignOff] = (),
 ) -> bytes:
     """Return the basis-of-contingency report of a study as a PDF.
 
@@ -51,6 +53,8 @@ def write_report(
         `results.json`, as it is written beside the report.
     extra_attachments : iterable of AttachedFile
         More files that shall travel inside, such as sign-offs.
+    typed : iterable of TypedSignOff
+        Sign-offs given by name, printed in the sign-off block.
 
     Raises
     ------
@@ -77,6 +81,7 @@ def write_report(
         created=created,
         draft=draft,
         files={one.name: (one.description, one.content) for one in attached},
+        typed=tuple(typed),
     )
     text = render_html(pages.report, folder)
     shelf = Shelf(
@@ -115,15 +120,7 @@ def _attached(
         )
     )
     files += extra
-    files.append(
-        AttachedFile(
-            name=MANIFEST,
-            content=_manifest(files, study.estimate.fingerprint),
-            description="Length and SHA-256 of every other file",
-            relationship="Data",
-        )
-    )
-    names = [one.name for one in files]
+    names = [one.name for one in files] + [MANIFEST]
     for name in names:
         if names.count(name) > 1:
             raise AttachmentNameTaken(
@@ -132,7 +129,13 @@ def _attached(
                 rule="Each file inside the report has a name of its own.",
                 remedy="Give the file in the estimate folder another name.",
             )
-    return tuple(files)
+    manifest = AttachedFile(
+        name=MANIFEST,
+        content=_manifest(files, study.estimate.fingerprint),
+        description="Length and SHA-256 of every other file",
+        relationship="Data",
+    )
+    return (*files, manifest)
 
 
 def _manifest(files: list[AttachedFile], fingerprint: str) -> bytes:
