@@ -13,9 +13,10 @@ from contingency.assurance.calibration import Calibration
 from contingency.assurance.evidence import evidence_score
 from contingency.assurance.findings import CheckOutcome, Finding
 from contingency.assurance.material import Material
-from contingency.assurance.outside_view import LognormalFit, outside_view
+from contingency.assurance.outside_view import outside_view
 from contingency.assurance.robustness import Robustness
 from contingency.estimate.nouns import Answer
+from contingency.quantities.predictive import LognormalFit
 from contingency.setting.allocation import Split
 from contingency.setting.levels import FundingLevel
 from contingency.version import VERSION

@@ -11,6 +11,8 @@ from contingency.estimate.evidence import COLUMNS as EVIDENCE
 from contingency.estimate.folder import CARRIED, LARGEST_EVIDENCE, LARGEST_READ
 from contingency.estimate.nouns import ShapeName
 from contingency.estimate.ranges import NEEDED
+from contingency.estimate.ratings import FILE as RATINGS
+from contingency.estimate.ratings import RATING_KEYS, RATING_REQUIRED
 from contingency.estimate.reading import LAYOUTS, read_estimate
 from contingency.estimate.settings import (
     KEYS,
@@ -122,7 +124,26 @@ def test_the_files_are_those_that_are_read():
     first = PAGE.split("## How tables are written", maxsplit=1)[0]
     named = set(re.findall(r"[a-z]+\.(?:csv|toml)", first))
 
-    assert named == {"estimate.toml", *(layout.file for layout in LAYOUTS), *CARRIED}
+    assert named == {
+        "estimate.toml",
+        *(layout.file for layout in LAYOUTS),
+        RATINGS,
+        *CARRIED,
+    }
+
+
+def test_the_keys_of_a_rated_model_are_those_of_the_page():
+    """Both headings of ratings.toml, and which keys are required."""
+    listed = rows(section(RATINGS))
+
+    assert [name for name, _ in listed] == [
+        *RATING_KEYS["model"],
+        *RATING_KEYS["factors"],
+    ]
+    assert [name for name, last in listed if last == "required"] == [
+        *RATING_REQUIRED["model"],
+        *RATING_REQUIRED["factors"],
+    ]
 
 
 def test_limits_and_defaults_are_those_of_the_code():

@@ -12,14 +12,11 @@ from dataclasses import dataclass
 
 from scipy.special import betaincinv
 
-from contingency.assurance.outside_view import (
-    FEWEST_PROJECTS,
-    LognormalFit,
-    fit_lognormal,
-)
 from contingency.assurance.wording import counted
 from contingency.errors import TooFewProjects
+from contingency.estimate.modelled import FEWEST_PROJECTS
 from contingency.estimate.nouns import ClosedProject
+from contingency.quantities.predictive import LognormalFit, fit_lognormal
 
 FUNDED = (50, 80, 90)
 """Levels of which the sentence speaks."""
@@ -127,7 +124,7 @@ def calibrate(projects: Sequence[ClosedProject]) -> Calibration:
     )
     return Calibration(
         projects=records,
-        fit=fit_lognormal(projects),
+        fit=fit_lognormal([project.ratio for project in projects]),
         funded=tuple(_record(records, percent) for percent in FUNDED),
         pictured=tuple(_record(records, percent) for percent in PICTURED),
     )
@@ -149,7 +146,8 @@ def binomial_interval(enough: int, count: int) -> tuple[float, float]:
 
 def _others(projects: Sequence[ClosedProject], place: int) -> LognormalFit:
     """Return the fit of all projects but the one at `place`."""
-    return fit_lognormal([*projects[:place], *projects[place + 1 :]])
+    others = [*projects[:place], *projects[place + 1 :]]
+    return fit_lognormal([project.ratio for project in others])
 
 
 def _record(records: Sequence[ProjectRecord], percent: int) -> LevelRecord:

@@ -16,8 +16,10 @@ from contingency.assurance.declaration import (
     Verdict,
     input_check,
 )
+from contingency.assurance.rows import uncertain_packages
 from contingency.assurance.settings import Settings, Threshold, WordList
-from contingency.assurance.wording import listed, words_found
+from contingency.assurance.wording import counted, listed, words_found
+from contingency.estimate.modelled import projects_like
 from contingency.estimate.nouns import PROJECT_WIDE, Estimate, RiskEvent
 
 SIMILAR_TITLES = Threshold(
@@ -257,4 +259,94 @@ def uplift_without_statement(estimate: Estimate, settings: Settings) -> Verdict:
     return hits
 
 
-CHECKS = (counted_twice, uplift_without_statement)
+@input_check(
+    slug="history-not-net",
+    subject="systemic risks and events",
+    title="History on top of ranges and events",
+    catches=(
+        "The whole overrun of past projects as a systemic risk, while ranges and"
+        " events pay for a part of it again."
+    ),
+    rule=(
+        "A systemic risk with model = history, in an estimate with ranges or open"
+        " events: the closed projects compared with say under covered what ranges and"
+        " events of this estimate cover of their final cost."
+    ),
+    severities=("major",),
+    todo=(
+        "Fill the column covered of history.csv, with 0 where nothing is covered; or"
+        " say in an answer why ranges and events cover nothing of the past overruns."
+    ),
+    sources=(
+        Source(
+            "UK transport appraisal guidance, unit A1.2: analysis and uplift are"
+            " reconciled",
+            "READ-title",
+        ),
+        COMMON_PRACTICE,
+    ),
+)
+def history_not_net(estimate: Estimate, _settings: Settings) -> Verdict:
+    """Find histories that hold what ranges and events pay for too."""
+    risks = [risk for risk in estimate.systemic if risk.model == "history"]
+    if not risks:
+        return NotApplicable("No systemic risk is taken from history.csv.")
+    projects = projects_like(estimate.history, estimate.outside_rule)
+    if any(project.covered > 0 for project in projects):
+        return []
+    ranges = len(uncertain_packages(estimate))
+    events = len(estimate.open_events)
+    if not ranges and not events:
+        return []
+    return [
+        Hit(
+            severity="major",
+            where=risk.id,
+            message=(
+                f"{risk.label} is the whole overrun of"
+                f" {counted(len(projects), 'closed project')}, on top of"
+                f" {counted(ranges, 'range')} and {counted(events, 'open event')}."
+            ),
+        )
+        for risk in risks
+    ]
+
+
+@input_check(
+    slug="ratings-without-evidence",
+    subject="systemic risks and events",
+    title="Ratings without evidence",
+    catches="A rated model that gives any answer its user likes.",
+    rule="Each factor of ratings.toml has evidence, where a systemic risk rests on it.",
+    severities=("major",),
+    todo="Write under evidence why the project is rated so, by whom and when.",
+    sources=(
+        Source(
+            "AACE International RP 42R-08 (draft): ratings of scope definition and"
+            " complexity",
+            "READ",
+        ),
+        COMMON_PRACTICE,
+    ),
+)
+def ratings_without_evidence(estimate: Estimate, _settings: Settings) -> Verdict:
+    """Find factors that are rated without a reason."""
+    model = estimate.rated_model
+    if model is None or all(risk.model != "ratings" for risk in estimate.systemic):
+        return NotApplicable("No systemic risk is taken from ratings.toml.")
+    bare = [factor.id for factor in model.factors if not factor.evidence]
+    if not bare:
+        return []
+    message = (
+        f"{counted(len(bare), 'factor')} of {model.name} have no evidence for their"
+        f" rating: {listed(bare)}."
+    )
+    return [Hit(severity="major", rows=tuple(bare), message=message)]
+
+
+CHECKS = (
+    counted_twice,
+    uplift_without_statement,
+    history_not_net,
+    ratings_without_evidence,
+)

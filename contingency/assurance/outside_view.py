@@ -12,65 +12,13 @@ from dataclasses import dataclass
 from typing import Literal
 
 import numpy as np
-from numpy.typing import NDArray
-from scipy.special import stdtr, stdtrit
 
 from contingency.assurance.material import Material
 from contingency.assurance.wording import counted
-from contingency.estimate.nouns import ClosedProject, Estimate, UpliftPart
+from contingency.estimate.modelled import FEWEST_PROJECTS, projects_like
+from contingency.estimate.nouns import ClosedProject, UpliftPart
 from contingency.quantities.percentiles import rank
-
-Array = NDArray[np.float64]
-
-FEWEST_PROJECTS = 8
-"""Closed projects without which nothing is fitted; a choice of the project's brief."""
-
-
-@dataclass(frozen=True, kw_only=True, slots=True)
-class LognormalFit:
-    """Final cost over estimate as a lognormal, and what it predicts for one more."""
-
-    count: int
-    """Closed projects behind it."""
-    log_mean: float
-    log_spread: float
-    """Standard deviation of the logarithms, with count - 1 in the denominator."""
-
-    def quantile(self, percent: float) -> float:
-        """Return the ratio that one more project does not exceed, by `percent`.
-
-        The predictive quantile for a small sample: exp(m + t s sqrt(1 + 1/n)), t of
-        Student with n - 1 degrees of freedom.  Theory of the normal sample.
-
-        >>> fit = LognormalFit(count=10, log_mean=0.0, log_spread=0.2)
-        >>> round(fit.quantile(50), 3), round(fit.quantile(80), 3)
-        (1.0, 1.204)
-        """
-        t = float(stdtrit(self.count - 1, percent / 100))
-        return math.exp(self.log_mean + t * self._predictive_spread)
-
-    def chance(self, ratio: float) -> float:
-        """Return the chance, 0 to 1, that one more project does not exceed `ratio`."""
-        if ratio <= 0:
-            return 0.0
-        distance = math.log(ratio) - self.log_mean
-        if self._predictive_spread == 0:
-            return float(distance >= 0)
-        return float(stdtr(self.count - 1, distance / self._predictive_spread))
-
-    @property
-    def _predictive_spread(self) -> float:
-        return self.log_spread * math.sqrt(1.0 + 1.0 / self.count)
-
-
-def fit_lognormal(projects: Sequence[ClosedProject]) -> LognormalFit:
-    """Return the lognormal of final cost over estimate; two projects at least."""
-    logs = np.log([project.ratio for project in projects])
-    return LognormalFit(
-        count=len(projects),
-        log_mean=float(logs.mean()),
-        log_spread=float(logs.std(ddof=1)),
-    )
+from contingency.quantities.predictive import LognormalFit, fit_lognormal
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -188,13 +136,13 @@ def outside_view(material: Material) -> OutsideView | str:
             points=points,
             positions=_positions(material, points, None),
         )
-    projects = projects_like(estimate)
+    projects = projects_like(estimate.history, rule)
     if len(projects) < FEWEST_PROJECTS:
         return (
             f"history.csv has {counted(len(projects), 'project')} to compare with;"
             f" {FEWEST_PROJECTS} are needed."
         )
-    fit = fit_lognormal(projects)
+    fit = fit_lognormal([project.ratio for project in projects])
     points = tuple((percent, fit.quantile(percent)) for percent in range(5, 96, 5))
     return OutsideView(
         kind="history",
@@ -205,12 +153,6 @@ def outside_view(material: Material) -> OutsideView | str:
         points=points,
         positions=_positions(material, points, fit),
     )
-
-
-def projects_like(estimate: Estimate) -> tuple[ClosedProject, ...]:
-    """Return the closed projects of the group that is compared with."""
-    group = estimate.outside_rule.group
-    return tuple(p for p in estimate.history if not group or p.group == group)
 
 
 def empirical_ratio(projects: Sequence[ClosedProject], percent: int) -> float:

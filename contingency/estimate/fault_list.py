@@ -18,6 +18,7 @@ FILE_ORDER = (
     "changes.csv",
     "drawdown.csv",
     "history.csv",
+    "ratings.toml",
 )
 """The files that are interpreted, in the order in which their faults are listed."""
 

@@ -659,6 +659,30 @@ class EvidenceMissing(Fault):
 
 
 # ---------------------------------------------------------------------------
+# The outside view and rated models
+
+
+class ModelMissing(Fault):
+    """A systemic risk that takes its uplift from something that is not there."""
+
+    slug = "model-missing"
+    law = (
+        "model = history needs eight closed projects of history.csv that are declared "
+        "comparable; model = ratings needs ratings.toml."
+    )
+
+
+class RatingUnclear(Fault):
+    """A form or a rating that a rated model does not have."""
+
+    slug = "rating-unclear"
+    law = (
+        "A model has the form log or linear; each factor has a value, or a rating "
+        "that is one of its levels."
+    )
+
+
+# ---------------------------------------------------------------------------
 # Changes since the previous revision
 
 

@@ -21,6 +21,7 @@ _IN_LISTS = {
     "loads": "cause",
     "shares": "package",
     "history": "id",
+    "factors": "id",
 }
 """Lists whose order says nothing, and the field that they are sorted by."""
 _IN_SETS = ("applies_to", "excludes", "packages")

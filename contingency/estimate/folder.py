@@ -32,7 +32,7 @@ from contingency.estimate.nouns import SourceFile
 REQUIRED = ("estimate.toml", "packages.csv")
 """Files without which there is no estimate."""
 
-CARRIED = ("prices.csv", "ratings.toml")
+CARRIED = ("prices.csv",)
 """Files that travel in the report and are not interpreted while reading."""
 
 LARGEST_READ = 8 * 2**20

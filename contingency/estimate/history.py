@@ -14,6 +14,7 @@ from pathlib import Path
 
 from contingency.estimate.fault_list import FaultList, Problem, shown
 from contingency.estimate.faults import (
+    AmountUnclear,
     CellBlank,
     PercentUnwanted,
     PointsOutOfOrder,
@@ -28,7 +29,7 @@ from contingency.estimate.tables import Layout, Table, read_table
 LAYOUT = Layout(
     file="history.csv",
     noun="project",
-    columns=("id", "name", "group", "estimate", "final", "notes"),
+    columns=("id", "name", "group", "estimate", "final", "covered", "notes"),
     required=("id", "estimate", "final"),
 )
 
@@ -71,6 +72,7 @@ def read_history(table: Table) -> tuple[ClosedProject, ...]:
                     group=row.text("group"),
                     estimate=estimate,
                     final=final,
+                    covered=_covered(row, final),
                     notes=row.text("notes"),
                     line=row.line,
                 )
@@ -163,6 +165,20 @@ def _uplifts(section: Section) -> tuple[UpliftPart, ...]:
         problem = Problem(SharesNotWhole, found, "Correct the shares.", rule)
         section.refuse("uplifts", problem)
     return tuple(parts)
+
+
+def _covered(row: Row, final: float) -> float:
+    """Return the part of the final cost that ranges and events cover; 0 if blank."""
+    figure = row.figure("covered")
+    if figure is None:
+        return 0.0
+    covered = float(figure.value)
+    if figure.is_percent or not 0.0 <= covered < final:
+        found = f"The amount is {shown(row.cell('covered'))}."
+        rule = "What is covered is a part of the final cost, an amount below it."
+        problem = Problem(AmountUnclear, found, "Write the part alone.", rule)
+        row.refuse("covered", problem)
+    return covered
 
 
 def _amount(row: Row, column: str, needed: str) -> float | None:

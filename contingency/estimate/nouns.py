@@ -175,6 +175,8 @@ class SystemicRisk(Noun):
     """Ids of the packages that it acts on, in file order."""
     applies_to: tuple[str, ...] = ("all",)
     """The words of the file: `all`, groups or package ids."""
+    model: Literal["history", "ratings"] | None = None
+    """What the uplift was taken from; None where the row has its own figures."""
     cause: str = ""
     covers: str = ""
     evidence: Evidence = Evidence()
@@ -471,6 +473,8 @@ class ClosedProject(Noun):
     """Base estimate at the same gate, any money."""
     final: float
     """Final cost, in the same money as `estimate`."""
+    covered: float = 0.0
+    """Part of the final cost that ranges and events of the estimate at hand cover."""
     notes: str = ""
     line: int
 
@@ -478,6 +482,52 @@ class ClosedProject(Noun):
     def ratio(self) -> float:
         """Final cost over estimate."""
         return self.final / self.estimate
+
+    @property
+    def net_ratio(self) -> float:
+        """Final cost less what ranges and events cover, over estimate."""
+        return (self.final - self.covered) / self.estimate
+
+
+class RatedFactor(Noun):
+    """One factor of a rated model, as this project is rated."""
+
+    id: str
+    name: str
+    coefficient: float
+    rating: str = ""
+    """Name of the level; blank where a number was given."""
+    value: float
+    """Number of the level, or the number given."""
+    evidence: str = ""
+
+    @property
+    def effect(self) -> float:
+        """Coefficient times value, in the units of the model's sum."""
+        return self.coefficient * self.value
+
+
+class RatedModel(Noun):
+    """A user's own model of the systemic uplift, from ratings.toml."""
+
+    name: str
+    provenance: str
+    """Who derived it, from which projects, when."""
+    form: Literal["log", "linear"]
+    """log: the sum is the logarithm of 1 + uplift; linear: it is the uplift."""
+    constant: float
+    residual_spread: float
+    """Standard deviation of what the model leaves open, in the units of its sum."""
+    degrees: int | None = None
+    """Degrees of freedom of `residual_spread`; None where they are not known."""
+    factors: tuple[RatedFactor, ...] = ()
+
+    @property
+    def expected(self) -> float:
+        """Constant and all effects together, in the units of the model's sum."""
+        from math import fsum
+
+        return fsum((self.constant, *(factor.effect for factor in self.factors)))
 
 
 class UpliftPart(Noun):
@@ -561,6 +611,8 @@ class Estimate(Noun):
     history: tuple[ClosedProject, ...] = ()
     """Closed projects, from history.csv."""
     outside_rule: OutsideRule = OutsideRule()
+    rated_model: RatedModel | None = None
+    """The model behind systemic risks with model = ratings, from ratings.toml."""
 
     sources: tuple[SourceFile, ...] = ()
     """Every file that was read, byte for byte; sorted by name."""

@@ -17,12 +17,14 @@ from contingency.estimate import changes as changes_csv
 from contingency.estimate import events as events_csv
 from contingency.estimate import history as history_csv
 from contingency.estimate import packages as packages_csv
+from contingency.estimate import ratings as ratings_toml
 from contingency.estimate import systemic as systemic_csv
 from contingency.estimate.fault_list import FaultList
 from contingency.estimate.fingerprint import fingerprint
 from contingency.estimate.folder import CARRIED, EstimateFolder
 from contingency.estimate.links import tie
-from contingency.estimate.nouns import Estimate
+from contingency.estimate.modelled import Models
+from contingency.estimate.nouns import Estimate, OutsideRule
 from contingency.estimate.packages import PackageRules, Packages
 from contingency.estimate.ranges import EndsRule
 from contingency.estimate.settings import Settings, read_settings
@@ -101,8 +103,13 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
     causes = causes_csv.read_causes(table, folder) if table else ()
     ends = _ends_rule(settings)
     packages = _packages(tables, folder, ends, settings)
+    models = _models(tables["history.csv"], folder, settings)
     table = tables["systemic.csv"]
-    risks = systemic_csv.read_systemic(table, folder, ends, packages) if table else ()
+    risks = (
+        systemic_csv.read_systemic(table, folder, ends, packages, models)
+        if table
+        else ()
+    )
     table = tables["events.csv"]
     events = events_csv.read_events(table, folder, ends, packages) if table else ()
     events = tie(table, events) if table else events
@@ -115,8 +122,6 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
     account = (
         drawdown_csv.read_account(table, tables["events.csv"], known) if table else ()
     )
-    table = tables["history.csv"]
-    history = history_csv.read_history(table) if table else ()
     for name in CARRIED:
         if folder.has(name):
             folder.carry(name)
@@ -141,9 +146,22 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
         changes=changes,
         account=account,
         account_rule=settings.account_rule,
-        history=history,
-        outside_rule=settings.outside_rule,
+        history=models.history,
+        outside_rule=models.rule,
+        rated_model=models.rated,
         sources=folder.sources,
+    )
+
+
+def _models(
+    history: Table | None, folder: EstimateFolder, settings: Settings | None
+) -> Models:
+    """Return what a systemic risk may take its uplift from."""
+    text = folder.text(ratings_toml.FILE)
+    return Models(
+        history=history_csv.read_history(history) if history else (),
+        rule=settings.outside_rule if settings else OutsideRule(),
+        rated=ratings_toml.read_ratings(text, folder.faults) if text else None,
     )
 
 

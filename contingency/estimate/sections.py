@@ -44,12 +44,14 @@ class Section:
     path: KeyPath
     lines: KeyLines
     faults: FaultList
+    file: str = FILE
+    """The file, as messages name it."""
 
     def place(self, key: str = "") -> Place:
         """Return the place of a key, or of the heading."""
         path = (*self.path, key) if key else self.path
         part = f"{self.name} {key}" if self.name and key else self.name or key
-        return Place(FILE, self.lines.line(path), part)
+        return Place(self.file, self.lines.line(path), part)
 
     def refuse(self, key: str, problem: Problem) -> None:
         """Note a problem of a key, or of the section where `key` is empty."""
@@ -70,14 +72,17 @@ class Section:
         for key in self.values:
             if key in known:
                 continue
-            found = f"{self.name} has no key {shown(key)}."
+            found = f"{self.name or self.file} has no key {shown(key)}."
             if key in elsewhere:
                 remedy = f"Move it to {elsewhere[key]}."
             else:
                 otherwise = f"Its keys are {listed(known, 'and')}."
                 remedy = instead(key, known, otherwise)
                 misspelt.add(nearest(key, known))
-            self.refuse(key, Problem(KeyUnknown, found, remedy))
+            rule = ""
+            if self.file != FILE:
+                rule = f"{self.file} has only the keys that docs/inputs.md lists."
+            self.refuse(key, Problem(KeyUnknown, found, remedy, rule))
         for key in required:
             if key not in self.values and key not in misspelt:
                 found = f"The key {key} is missing."
@@ -236,7 +241,12 @@ class Section:
         """Return a section within this one."""
         path = (*self.path, *steps)
         return Section(
-            name=name, values=values, path=path, lines=self.lines, faults=self.faults
+            name=name,
+            values=values,
+            path=path,
+            lines=self.lines,
+            faults=self.faults,
+            file=self.file,
         )
 
     def refuse_kind(self, key: str, expected: str, remedy: str) -> None:

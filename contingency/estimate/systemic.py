@@ -2,12 +2,21 @@
 
 from __future__ import annotations
 
+from typing import Literal, cast
+
 from contingency.estimate.evidence import COLUMNS as EVIDENCE
 from contingency.estimate.evidence import read_evidence
 from contingency.estimate.fault_list import Problem, instead, shown
-from contingency.estimate.faults import AppliesToUnclear, IdUnknown
+from contingency.estimate.faults import (
+    AppliesToUnclear,
+    CellBlank,
+    CellWithoutMeaning,
+    IdUnknown,
+    ModelMissing,
+)
 from contingency.estimate.folder import EstimateFolder
-from contingency.estimate.nouns import SystemicRisk
+from contingency.estimate.modelled import Models
+from contingency.estimate.nouns import CostRange, SystemicRisk
 from contingency.estimate.packages import Packages
 from contingency.estimate.ranges import EndsRule, UpliftTerms, read_range
 from contingency.estimate.rows import RESERVED, Row
@@ -26,6 +35,7 @@ LAYOUT = Layout(
         "shape",
         "outcomes",
         "applies_to",
+        "model",
         "cause",
         "covers",
         *EVIDENCE,
@@ -33,20 +43,34 @@ LAYOUT = Layout(
     required=("id", "name"),
 )
 
+Model = Literal["history", "ratings"]
+MODELS: tuple[str, ...] = ("history", "ratings")
+FIGURE_COLUMNS = ("low", "likely", "high", "ends", "shape", "outcomes")
+"""Columns that stay blank where a model gives the uplift."""
+
 
 def read_systemic(
-    table: Table, folder: EstimateFolder, ends: EndsRule, packages: Packages | None
+    table: Table,
+    folder: EstimateFolder,
+    ends: EndsRule,
+    packages: Packages | None,
+    models: Models,
 ) -> tuple[SystemicRisk, ...]:
     """Return the systemic risks that could be read, in file order.
 
-    `packages` is None where packages.csv has no rows to act on.
+    `packages` is None where packages.csv has no rows to act on; `models` is what a
+    row may take its uplift from.
     """
     taken: dict[str, int] = {}
     risks = []
     for row in table.rows:
         risk_id = row.id(taken, reserved=RESERVED)
         name = row.text("name", needed="a title")
-        uplift = read_range(row, UpliftTerms(), ends)
+        model = row.word("model", MODELS)
+        if row.cell("model"):
+            uplift = _modelled(row, model, models) if model else None
+        else:
+            uplift = read_range(row, UpliftTerms(), ends)
         words = row.entries("applies_to") or ["all"]
         acts_on = _acts_on(row, words, packages)
         evidence = read_evidence(row, folder)
@@ -58,6 +82,7 @@ def read_systemic(
             uplift=uplift,
             packages=acts_on,
             applies_to=tuple(words),
+            model=cast("Model | None", model or None),
             cause=row.text("cause"),
             covers=row.text("covers"),
             evidence=evidence,
@@ -65,6 +90,27 @@ def read_systemic(
         )
         risks.append(risk)
     return tuple(risks)
+
+
+def _modelled(row: Row, model: str, models: Models) -> CostRange | None:
+    """Return the uplift that a model gives; None, and the faults, if it gives none."""
+    for column in FIGURE_COLUMNS:
+        if row.cell(column):
+            found = f"The uplift is taken from {model}; {column} says"
+            found += f" {shown(row.cell(column))}."
+            problem = Problem(CellWithoutMeaning, found, "Empty one of the two cells.")
+            row.refuse(column, problem)
+    row.text("covers", needed="which part of the cost it covers and which it does not")
+    if "covers" not in row.cells:
+        found = "The table has no column covers."
+        remedy = "Add it, and say which part of the cost the uplift covers."
+        row.refuse("model", Problem(CellBlank, found, remedy))
+    uplift = models.uplift(model)
+    if isinstance(uplift, str):
+        remedy = "Supply what is missing, or give the row a low and a high."
+        row.refuse("model", Problem(ModelMissing, uplift, remedy))
+        return None
+    return uplift
 
 
 def _acts_on(row: Row, words: list[str], packages: Packages | None) -> tuple[str, ...]:

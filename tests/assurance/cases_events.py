@@ -3,8 +3,17 @@
 import dataclasses
 import datetime as dt
 
-from contingency.estimate.nouns import Load, OutsideRule, PackageShare
+from contingency.estimate.modelled import history_uplift, rated_uplift
+from contingency.estimate.nouns import (
+    ClosedProject,
+    Load,
+    OutsideRule,
+    PackageShare,
+    RatedFactor,
+    RatedModel,
+)
 from tests.assurance.builder import (
+    ALIKE,
     EVENTS,
     OUTSIDE,
     PACKAGES,
@@ -67,6 +76,40 @@ def outside(middle, high):
     """The sound study beside a table with this P50 and P80."""
     rule = OUTSIDE.model_copy(update={"percentiles": ((50, middle), (80, high))})
     return spoiled(estimate=sound_estimate(outside_rule=rule))
+
+
+def from_history(covered):
+    """A systemic risk from nine closed projects."""
+    ratios = (0.95, 1.02, 1.05, 1.11, 1.13, 1.19, 1.26, 1.31, 1.48)
+    history = tuple(
+        ClosedProject(
+            id=f"H{i}", estimate=100, final=100 * r + covered, covered=covered, line=2
+        )
+        for i, r in enumerate(ratios)
+    )
+    uplift = history_uplift(history)
+    return sound_estimate(
+        history=history,
+        outside_rule=OutsideRule(**ALIKE),
+        systemic=(systemic(uplift=uplift, model="history", covers="all but events"),),
+    )
+
+
+def from_ratings(evidence):
+    """A systemic risk from a rated model of one factor."""
+    factor = RatedFactor(
+        id="scope", name="Scope", coefficient=0.05, value=2, evidence=evidence
+    )
+    model = RatedModel(
+        name="Own model",
+        provenance="forty quays",
+        form="log",
+        constant=0.0,
+        residual_spread=0.1,
+        factors=(factor,),
+    )
+    risk = systemic(uplift=rated_uplift(model), model="ratings", covers="definition")
+    return sound_estimate(rated_model=model, systemic=(risk,))
 
 
 def boxed(count, values):
@@ -242,6 +285,28 @@ CASES = (
         lambda: sound_estimate(
             systemic=(systemic(name="Optimism bias", covers="instead of events"),)
         ),
+    ),
+    fault(
+        "history-not-net",
+        "the whole overrun",
+        lambda: from_history(covered=0.0),
+        "major",
+        "the whole overrun of 9 closed projects, on top of 7 ranges and 5 open events",
+        where="S1",
+    ),
+    twin("history-not-net", "net", lambda: from_history(covered=5.0)),
+    fault(
+        "ratings-without-evidence",
+        "one factor",
+        lambda: from_ratings(evidence=""),
+        "major",
+        "1 factor of Own model have no evidence for their rating: scope",
+        rows=("scope",),
+    ),
+    twin(
+        "ratings-without-evidence",
+        "a review",
+        lambda: from_ratings(evidence="review of 3 March"),
     ),
     fault(
         "certain-events",

@@ -7,15 +7,11 @@ import pytest
 from scipy import stats
 
 from contingency.assurance.calibration import binomial_interval, calibrate
-from contingency.assurance.outside_view import (
-    LognormalFit,
-    empirical_ratio,
-    fit_lognormal,
-    outside_view,
-)
+from contingency.assurance.outside_view import empirical_ratio, outside_view
 from contingency.cli import main
 from contingency.errors import TooFewProjects
 from contingency.estimate.nouns import ClosedProject, OutsideRule
+from contingency.quantities.predictive import LognormalFit, fit_lognormal
 from tests.assurance.builder import ALIKE, OUTSIDE, sound_estimate, spoiled
 
 RATIOS = (0.94, 1.02, 1.05, 1.11, 1.13, 1.19, 1.26, 1.31, 1.48, 1.77)
@@ -37,7 +33,7 @@ def beside(projects=(), **rule):
 
 def test_a_fit_predicts_as_the_prediction_interval_of_a_normal_sample():
     """Student's t with n - 1 degrees of freedom, spread times sqrt(1 + 1/n)."""
-    fit = fit_lognormal(closed(*RATIOS))
+    fit = fit_lognormal(RATIOS)
     logs = np.log(RATIOS)
     predictive = stats.t(
         9, loc=logs.mean(), scale=logs.std(ddof=1) * np.sqrt(1 + 1 / 10)
@@ -139,16 +135,14 @@ def test_a_back_test_leaves_each_project_out():
     """Its percent is its place on what the other nine predict."""
     result = calibrate(closed(*RATIOS))
     last = result.projects[-1]
-    others = fit_lognormal(closed(*RATIOS[:-1]))
+    others = fit_lognormal(RATIOS[:-1])
 
     assert last.percent == pytest.approx(100 * others.chance(1.77))
     assert [record.percent for record in result.funded] == [50, 80, 90]
     for record in (*result.funded, *result.pictured):
         by_amount = sum(
             ratio
-            <= fit_lognormal(closed(*RATIOS[:i], *RATIOS[i + 1 :])).quantile(
-                record.percent
-            )
+            <= fit_lognormal((*RATIOS[:i], *RATIOS[i + 1 :])).quantile(record.percent)
             for i, ratio in enumerate(RATIOS)
         )
         assert record.enough == by_amount
