@@ -1,0 +1,54 @@
+"""The revisions of one estimate: follow `previous` from folder to folder."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+from contingency.errors import NoPrevious, RevisionCircle
+from contingency.estimate.nouns import Estimate
+from contingency.estimate.reading import read_estimate
+
+MOST_REVISIONS = 200
+"""Revisions of one chain.  A choice of ours: one a month for sixteen years."""
+
+
+def read_chain(folder: Path | str) -> tuple[Estimate, ...]:
+    """Return the estimate in a folder and all revisions before it, the oldest first.
+
+    `previous` in estimate.toml is read relative to the folder that it stands in.
+
+    Raises
+    ------
+    NoPrevious
+        no-previous.  `previous` names a folder that is not there.
+    RevisionCircle
+        revision-circle.  The chain leads back to a revision that it has passed.
+    UnusableEstimate
+        unusable-estimate.  A revision cannot be read; the message names its folder.
+    """
+    here = Path(folder)
+    chain = [read_estimate(here)]
+    passed = [here.resolve()]
+    while chain[-1].previous:
+        named = here / chain[-1].previous
+        where = f"{here / 'estimate.toml'}, [estimate] previous"
+        if not named.is_dir():
+            raise NoPrevious(
+                where=where,
+                found=f'There is no folder "{chain[-1].previous}" there.',
+                rule="previous names the folder of the revision before, relative to "
+                "its own.",
+                remedy="Correct the path, or remove the line for the first revision.",
+            )
+        if named.resolve() in passed or len(chain) >= MOST_REVISIONS:
+            raise RevisionCircle(
+                where=where,
+                found=f'"{chain[-1].previous}" leads back to a revision that is '
+                "already in the chain, or the chain has no end.",
+                rule="Each revision names the one before it, down to the first.",
+                remedy="Remove previous from the first revision, or correct a path.",
+            )
+        here = named
+        passed.append(named.resolve())
+        chain.append(read_estimate(named))
+    return tuple(reversed(chain))
