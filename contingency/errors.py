@@ -261,6 +261,12 @@ class WrongPassword(RecordError, InputError):
     slug = "wrong-password"
 
 
+class NoPassword(RecordError, InputError):
+    """There is nowhere to take the certificate's password from."""
+
+    slug = "no-password"
+
+
 class UnfitCertificate(RecordError, InputError):
     """The certificate is expired, not yet valid, or not made for signing."""
 

@@ -2,6 +2,7 @@
 
 import argparse
 import re
+import shlex
 from pathlib import Path
 
 import pytest
@@ -16,7 +17,7 @@ def commands() -> dict[str, argparse.ArgumentParser]:
     """Every command of the parser by its name."""
     found = next(
         action
-        for action in cli._parser()._actions
+        for action in cli.make_parser()._actions
         if isinstance(action, argparse._SubParsersAction)
     )
     return dict(found.choices)
@@ -72,7 +73,7 @@ def test_the_example_of_a_command_is_the_one_of_its_help(name):
     ).group(1)
 
     assert commands()[name].epilog == f"Example: {example}"
-    assert cli._parser().parse_args(example.split()[1:]).command == name
+    assert cli.make_parser().parse_args(shlex.split(example)[1:]).command == name
 
 
 def test_the_exit_statuses_of_the_page_are_those_of_the_code():
