@@ -217,9 +217,10 @@ def _column(values: list[float]) -> Array:
 
 def _kind(shape: Shape) -> int:
     """Return the way a shape is evaluated: 0 for a table, 4 for a constant."""
-    kinds: tuple[type[Shape] | tuple[type[Shape], ...], ...]
-    kinds = (Lognormal, Normal, (Discrete, Points), Fixed)
-    for kind, cls in enumerate(kinds, start=1):
-        if isinstance(shape, cls):
-            return kind
-    return 0
+    if isinstance(shape, Lognormal):
+        return 1
+    if isinstance(shape, Normal):
+        return 2
+    if isinstance(shape, (Discrete, Points)):
+        return 3
+    return 4 if isinstance(shape, Fixed) else 0

@@ -55,6 +55,35 @@ def test_intervals_of_a_smooth_total(capsys):
 
 
 @pytest.mark.slow
+def test_two_events_whose_probability_sits_at_the_level(capsys):
+    """Two large events leave P80 on a step of their joint chances, among others.
+
+    Neither happens with a chance of 0.8; the curve is steep and flat by turns, and
+    the exact value is the upper end of the ranges alone.
+    """
+    ranges = (cost_range(70, 100, 160), cost_range(60, 100, 150))
+    large = cost_range(200, 260, 420)
+    chance = 1.0 - np.sqrt(0.8)
+    model = estimate(
+        [package("A", ranges[0]), package("B", ranges[1])],
+        (event("R", chance, large), event("S", chance, large)),
+        trials=TRIALS,
+    )
+    exact = exact_total(
+        [r.distribution for r in ranges],
+        [(large.distribution, chance, 1)] * 2,
+        low=0.0,
+        high=1400.0,
+    )
+    share, width = covered(model, {p: exact.percentile(p) for p in PERCENTS})
+    with capsys.disabled():
+        print(f"\ntwo events at P80: coverage {share}, mean widths {np.round(width)}")
+
+    assert np.all((share >= 0.925) & (share <= 0.975))
+    assert width[1] > 5.0 * width[0]
+
+
+@pytest.mark.slow
 @pytest.mark.parametrize(("probability", "percent"), [(0.5, 50), (0.2, 80), (0.1, 90)])
 def test_an_event_whose_probability_sits_at_the_level(capsys, probability, percent):
     """The curve has a gap at the level: the interval reaches over it.
