@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from dataclasses import dataclass, replace
 
+from contingency.assurance.events import rare_large_events
 from contingency.assurance.findings import Finding
 from contingency.estimate.nouns import SignOffLine
 from contingency.report.charts import KINDS, Chart
@@ -28,6 +29,13 @@ from contingency.study import Study
 
 REQUIRED_ROLES = ("prepared", "checked", "approved")
 """Roles that have a line even if the estimate does not name them."""
+
+LONGEST_CAUTION = 200
+"""Characters of a caution on the answer page; longer ones are cut there only."""
+STATED = 4
+"""Weight of a caution that the authors state."""
+LIGHTEST = 5
+"""Weight of a finding that has been answered; notes are no cautions."""
 
 MOST_LEVELS = 6
 """Funded levels that the answer page shows; the chapter Result shows all."""
@@ -293,25 +301,46 @@ def _top_driver(driver: Driver, amounts: Amounts) -> TopDriver:
 
 
 def _worst_cautions(study: Study) -> tuple[AnswerCaution, ...]:
-    """Return three: findings by weight, open before answered, then those stated."""
-    weight = {"stop": 0, "major": 1, "caution": 2, "note": 9}
-    order = sorted(
-        (finding for finding in study.findings if finding.severity != "note"),
-        key=lambda f: (weight[f.severity], f.is_answered),
-    )
+    """Return the three that weigh most in a decision."""
     found = [
-        AnswerCaution(
-            mark=finding.severity.capitalize()
-            + (", answered" if finding.is_answered else ""),
-            words=sentence(clipped(finding.message, 170)),
+        (
+            _weight(finding),
+            AnswerCaution(
+                mark=finding.severity.capitalize()
+                + (", answered" if finding.is_answered else ""),
+                words=sentence(clipped(finding.message, LONGEST_CAUTION)),
+            ),
         )
-        for finding in order
+        for finding in study.findings
     ]
     found += [
-        AnswerCaution(mark="Stated", words=clipped(words, 170))
+        (
+            STATED,
+            AnswerCaution(
+                mark="Stated", words=sentence(clipped(words, LONGEST_CAUTION))
+            ),
+        )
         for words in study.estimate.statements.cautions
     ]
-    return tuple(found[:3])
+    found.sort(key=lambda pair: pair[0])
+    return tuple(one for weight, one in found if weight <= LIGHTEST)[:3]
+
+
+def _weight(finding: Finding) -> int:
+    """Return the place of a finding among the cautions; smaller weighs more.
+
+    What stands in the way comes first, then what the money does not cover, then what
+    the checks and the authors warn of, then what has been answered.
+    """
+    if finding.severity == "stop":
+        return 0
+    if finding.needs_attention:
+        return 1
+    if finding.check == rare_large_events.slug:
+        return 2
+    if finding.severity == "caution" and not finding.is_answered:
+        return 3
+    return LIGHTEST if finding.severity in ("major", "caution") else LIGHTEST + 1
 
 
 def _attention(findings: tuple[Finding, ...]) -> str:
