@@ -2,10 +2,12 @@
 
 import re
 import shutil
+from pathlib import Path
 
 import pytest
 
 from contingency.errors import TemplateFault
+from contingency.report.draft_mark import draft_marks
 from contingency.report.folder import (
     ENTRY,
     STYLE,
@@ -17,6 +19,8 @@ from contingency.report.look import read_look
 from contingency.report.pages import make_pages
 from contingency.report.pdf import write_report
 from tests.report.conftest import CREATED
+
+ROOT = Path(__file__).parents[2]
 
 
 @pytest.fixture
@@ -213,3 +217,19 @@ def test_an_own_folder_makes_an_own_report(folder, refit, results):
     assert round(float(printed[1].replace(",", "")), -3) == round(
         refit.target.contingency, -3
     )
+
+
+def test_the_document_names_every_file_and_every_picture(refit, look, results):
+    """`docs/own-templates.md` is what an organisation works from."""
+    document = (ROOT / "docs" / "own-templates.md").read_text(encoding="utf-8")
+    named = set(re.findall(r"^\| `([\w./-]+)` \|", document, re.MULTILINE))
+    there = {
+        f"{path.name}/" if path.is_dir() else path.name
+        for path in templates_folder().iterdir()
+    }
+    pictures = set(re.findall(r"`chart:([\w-]+)`", document))
+    files = {"results.json": ("Results", results)}
+    pages = make_pages(refit, look, created=CREATED, draft=True, files=files)
+
+    assert named == there
+    assert pictures == set(pages.pictures) | set(draft_marks(look))
