@@ -125,7 +125,8 @@ class Apart:
             raise _stumbled("the process that read it died.") from None
         if "answer" in head:
             return head["answer"], parts
-        self.close()
+        if "memory" in head:
+            self.close()
         raise _error_from(head, self._megabytes)
 
     def _running(self) -> subprocess.Popen[bytes]:
