@@ -85,6 +85,22 @@ def test_every_file_exists(path):
     assert [name for name in names if not (ROOT / name).exists()] == []
 
 
+def test_every_document_can_be_reached():
+    """From the README or the developers' guide, link by link or name by name."""
+    reached, open_ = set(), [ROOT / "README.md", ROOT / "DEVELOPERS.md"]
+    while open_:
+        path = open_.pop()
+        if path in reached or path.suffix != ".md" or not path.exists():
+            continue
+        reached.add(path)
+        text = path.read_text(encoding="utf-8")
+        links = (target.partition("#")[0] for target in LINK.findall(text))
+        open_ += [(path.parent / link).resolve() for link in links if link]
+        open_ += [ROOT / name for name in FILE.findall(text)]
+
+    assert sorted(set(DOCUMENTS) - reached) == []
+
+
 def test_a_wrong_name_would_be_noticed():
     """The look-up above can fail."""
     assert named_object("contingency.errors.InputError").slug == "input-error"

@@ -88,3 +88,12 @@ def test_the_folder_that_the_report_line_makes_is_named(monkeypatch, tmp_path):
     (made,) = tmp_path.iterdir()
 
     assert f"`{made.name}`" in README
+
+
+def test_the_table_of_commands_is_the_whole_one(capsys):
+    """Every command that `contingency --help` lists, in its order."""
+    with pytest.raises(SystemExit):
+        main(["--help"])
+    listed = re.findall(r"^    ([a-z-]+)(?= |$)", capsys.readouterr().out, re.MULTILINE)
+
+    assert re.findall(r"^\| `contingency ([a-z-]+) ", README, re.MULTILINE) == listed
