@@ -384,6 +384,12 @@ class NoAccount(RevisionError):
     slug = "no-account"
 
 
+class UnusableResults(RevisionError):
+    """A results.json of an earlier revision that cannot be used."""
+
+    slug = "unusable-results"
+
+
 class NotFinished(RevisionError):
     """A close-out of a project that is not finished."""
 

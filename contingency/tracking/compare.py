@@ -74,6 +74,12 @@ class Comparison:
         return not self.bridge.steps
 
     @property
+    def closes(self) -> bool:
+        """Whether the steps lead from old to new, to the rounding of floats."""
+        base, contingency = self.bridge.residual
+        return max(abs(base), abs(contingency)) <= 1e-9 * abs(self.bridge.after.total)
+
+    @property
     def unexplained_base(self) -> float:
         """Base change without a reason, amounts of both signs added up, money."""
         step = self.bridge.step(Family.UNEXPLAINED)
