@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING, Literal
 
 from contingency.assurance.declaration import (
     Hit,
@@ -16,6 +17,15 @@ from contingency.assurance.rows import ranged_rows
 from contingency.assurance.settings import Settings, Threshold
 from contingency.assurance.wording import counted, listed, percent
 from contingency.estimate.nouns import Evidence
+from contingency.quantities.rounding import round_parts
+
+if TYPE_CHECKING:
+    # For the type checker only: `contingency check` must not load the engine.
+    from contingency.setting.drivers import Driver
+
+BackedBy = Literal["data", "analogue", "judgement", "nothing"]
+KINDS: tuple[BackedBy, ...] = ("data", "analogue", "judgement", "nothing")
+"""What may back a range, the best first."""
 
 EVIDENCE_SHARE = Threshold(
     name="evidence_variance_percent",
@@ -52,7 +62,7 @@ EVIDENCE_SHARE = Threshold(
 )
 def ranges_without_evidence(material: Material, settings: Settings) -> Verdict:
     """Find the large drivers whose evidence is not complete."""
-    evidence = {row.id: row.evidence for row in ranged_rows(material.estimate)}
+    evidence = _evidence_of(material)
     drivers = sorted(
         (d for d in material.drivers if d.kind != "cause" and d.variance_share > 0),
         key=lambda driver: -driver.variance_share,
@@ -67,7 +77,7 @@ def ranges_without_evidence(material: Material, settings: Settings) -> Verdict:
         if 100 * reached >= settings.number(EVIDENCE_SHARE):
             break
         reached += driver.variance_share
-        missing = _missing(evidence.get(driver.id, Evidence()))
+        missing = _missing(evidence.get((driver.kind, driver.id), Evidence()))
         if missing:
             bare.append(driver.id)
             words.append(f"{driver.id} (no {' or '.join(missing)})")
@@ -98,23 +108,62 @@ class EvidenceScore:
     """Behind it stands no basis, or one whose kind is not stated."""
 
 
-def evidence_score(material: Material) -> EvidenceScore | None:
-    """Return what backs the spread of the total; None where nothing varies.
+@dataclass(frozen=True, kw_only=True, slots=True)
+class EvidenceKind:
+    """The inputs with one kind of evidence and their part of the variance."""
+
+    kind: BackedBy
+    share: float
+    """Fraction of the variance; the four kinds sum to 1."""
+    percent: int
+    """The share in whole percent; the four kinds sum to 100."""
+    drivers: tuple[Driver, ...]
+    """Inputs of this kind that raise the variance, largest share first."""
+
+
+def evidence_by_kind(material: Material) -> tuple[EvidenceKind, ...]:
+    """Return what backs the spread of the total, in the order of `KINDS`.
 
     Shares of variance of ranges, systemic risks and events, by the kind of their
-    evidence.  Inputs that reduce the variance count as nought.
+    evidence.  Inputs that reduce the variance count as nought.  Empty where nothing
+    varies.
     """
-    evidence = {row.id: row.evidence for row in ranged_rows(material.estimate)}
-    share = dict.fromkeys(("data", "analogue", "judgement", "nothing"), 0.0)
+    evidence = _evidence_of(material)
+    backed: dict[BackedBy, list[Driver]] = {kind: [] for kind in KINDS}
     for driver in material.drivers:
         if driver.kind != "cause" and driver.variance_share > 0:
-            known = evidence[driver.id]
-            backed = known.kind if known.is_recorded and known.kind else "nothing"
-            share[backed] += driver.variance_share
-    whole = sum(share.values())
+            known = evidence[driver.kind, driver.id]
+            kind = known.kind if known.is_recorded and known.kind else "nothing"
+            backed[kind].append(driver)
+    sums = [sum(d.variance_share for d in drivers) for drivers in backed.values()]
+    whole = sum(sums)
     if whole <= 0:
+        return ()
+    percents = round_parts([100.0 * part / whole for part in sums], step=1.0, total=100)
+    return tuple(
+        EvidenceKind(
+            kind=kind,
+            share=part / whole,
+            percent=round(share),
+            drivers=tuple(sorted(drivers, key=lambda d: -d.variance_share)),
+        )
+        for (kind, drivers), part, share in zip(
+            backed.items(), sums, percents, strict=True
+        )
+    )
+
+
+def evidence_score(material: Material) -> EvidenceScore | None:
+    """Return what backs the spread of the total; None where nothing varies."""
+    kinds = evidence_by_kind(material)
+    if not kinds:
         return None
-    return EvidenceScore(**{kind: part / whole for kind, part in share.items()})
+    return EvidenceScore(**{one.kind: one.share for one in kinds})
+
+
+def _evidence_of(material: Material) -> dict[tuple[str, str], Evidence]:
+    """Return the evidence by kind and id: an event may have the id of a package."""
+    return {(row.kind, row.id): row.evidence for row in ranged_rows(material.estimate)}
 
 
 def _missing(evidence: Evidence) -> list[str]:

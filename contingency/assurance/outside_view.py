@@ -66,6 +66,32 @@ class OutsideView:
         return table_ratio(self.points, percent)
 
 
+@dataclass(frozen=True, kw_only=True, slots=True)
+class OutsideAmount:
+    """What the outside view says of this project at one percentile."""
+
+    percent: int
+    ratio: float
+    """Final cost over base."""
+    total: float
+    """Ratio times this project's base, price-date money."""
+
+
+def outside_amounts(
+    view: OutsideView, *, base: float, percents: Sequence[int]
+) -> tuple[OutsideAmount, ...]:
+    """Return what the outside view says at some percentiles, in rising order.
+
+    Percentiles beyond the ends of a table are left out.
+    """
+    found = ((percent, view.ratio(percent)) for percent in sorted(set(percents)))
+    return tuple(
+        OutsideAmount(percent=percent, ratio=ratio, total=ratio * base)
+        for percent, ratio in found
+        if ratio is not None
+    )
+
+
 def table_ratio(points: Sequence[tuple[int, float]], percent: int) -> float | None:
     """Return the ratio of a percentile table at P`percent`, by straight lines.
 

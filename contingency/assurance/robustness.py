@@ -78,6 +78,21 @@ class SeedTest:
         """Number of fresh runs with a contingency below the issued one."""
         return sum(amount < self.issued for amount in self.contingencies)
 
+    @property
+    def above(self) -> int:
+        """Number of fresh runs with a contingency at or above the issued one."""
+        return len(self.contingencies) - self.below
+
+    @property
+    def lowest(self) -> float:
+        """Smallest contingency of a fresh run, money."""
+        return min(self.contingencies)
+
+    @property
+    def highest(self) -> float:
+        """Largest contingency of a fresh run, money."""
+        return max(self.contingencies)
+
 
 @dataclass(frozen=True, kw_only=True, slots=True)
 class Robustness:

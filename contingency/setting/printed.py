@@ -169,6 +169,21 @@ def printed_figures(
     )
 
 
+def printed_change(
+    contingency: float, *, issued: float, step: float
+) -> tuple[float, float]:
+    """Return a contingency and its distance from the issued one, in whole steps.
+
+    The distance is that of the two printed amounts, so that it can be checked on
+    paper.  `issued` is the printed contingency.
+
+    >>> printed_change(40_140_758.0, issued=39_400_000.0, step=100_000.0)
+    (40100000.0, 700000.0)
+    """
+    amount = round_amount(contingency, step)
+    return amount, round_amount(amount - issued, step)
+
+
 def _printed_levels(
     contingency: dict[int, float], *, base: int, step: float
 ) -> dict[int, PrintedLevel]:

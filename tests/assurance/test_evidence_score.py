@@ -4,7 +4,7 @@ import dataclasses
 
 import pytest
 
-from contingency.assurance.evidence import evidence_score
+from contingency.assurance.evidence import evidence_by_kind, evidence_score
 from contingency.estimate.nouns import Evidence
 from tests.assurance.builder import (
     EVIDENCE,
@@ -52,3 +52,45 @@ def test_each_kind_gets_the_variance_of_its_rows():
 def test_a_point_has_no_score():
     """Nothing varies, so nothing backs it."""
     assert evidence_score(spoiled(drivers=())) is None
+
+
+def test_an_event_may_have_the_id_of_a_package():
+    """Ids are unique in their file only; each row keeps its own evidence."""
+    events = changed(
+        sound_estimate().events,
+        "R3",
+        id="P2",
+        evidence=EVIDENCE.model_copy(update={"kind": "judgement"}),
+    )
+    drivers = tuple(
+        dataclasses.replace(d, id="P2") if (d.kind, d.id) == ("event", "R3") else d
+        for d in sound_study().drivers
+    )
+    kinds = {
+        one.kind: one
+        for one in evidence_by_kind(
+            spoiled(estimate=sound_estimate(events=events), drivers=drivers)
+        )
+    }
+
+    assert [(d.kind, d.id) for d in kinds["judgement"].drivers] == [("event", "P2")]
+    assert ("range", "P2") in [(d.kind, d.id) for d in kinds["data"].drivers]
+
+
+def test_whole_percents_of_the_kinds_make_a_hundred():
+    """And each is less than one percent from its share; the largest inputs first."""
+    kinds = evidence_by_kind(sound_study())
+
+    assert sum(one.percent for one in kinds) == 100
+    for one in kinds:
+        assert abs(one.percent - 100 * one.share) < 1
+        shares = [driver.variance_share for driver in one.drivers]
+        assert shares == sorted(shares, reverse=True)
+        assert sum(shares) == pytest.approx(
+            one.share
+            * sum(
+                d.variance_share
+                for d in sound_study().drivers
+                if d.kind != "cause" and d.variance_share > 0
+            )
+        )

@@ -7,7 +7,11 @@ import pytest
 from scipy import stats
 
 from contingency.assurance.calibration import binomial_interval, calibrate
-from contingency.assurance.outside_view import empirical_ratio, outside_view
+from contingency.assurance.outside_view import (
+    empirical_ratio,
+    outside_amounts,
+    outside_view,
+)
 from contingency.cli import main
 from contingency.errors import TooFewProjects
 from contingency.estimate.nouns import ClosedProject, OutsideRule
@@ -60,6 +64,23 @@ def test_predictions_hold_as_often_as_they_say():
     error = np.sqrt(0.8 * 0.2 / 4_000)
 
     assert held / 4_000 == pytest.approx(0.8, abs=3 * error)
+
+
+def test_amounts_of_the_outside_view_are_ratios_of_the_base():
+    """In rising order, each once; beyond the ends of a table there is none."""
+    study = beside(closed(*RATIOS))
+    view = outside_view(study)
+    table = outside_view(beside(percentiles=((50, 0.1), (80, 0.3)), source="a table"))
+    amounts = outside_amounts(view, base=1e6, percents=(80, 50, 80))
+
+    assert [one.percent for one in amounts] == [50, 80]
+    assert [one.total for one in amounts] == pytest.approx(
+        [1e6 * view.fit.quantile(50), 1e6 * view.fit.quantile(80)]
+    )
+    assert [
+        (one.percent, one.ratio)
+        for one in outside_amounts(table, base=1e6, percents=(10, 50, 80, 90))
+    ] == [(50, 1.1), (80, 1.3)]
 
 
 def test_a_history_places_base_p50_and_target():
