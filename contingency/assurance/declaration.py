@@ -25,6 +25,7 @@ Subject = Literal[
     "simulation",
     "level and presentation",
     "allocation and holding",
+    "revisions and account",
     "answers",
 ]
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime as dt
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -37,6 +38,45 @@ class YearAmounts:
     """Outturn money: base, contingency and escalation."""
 
 
+@dataclass(frozen=True, kw_only=True, slots=True)
+class RevisionChange:
+    """What the checks must know of the way from the last revision.
+
+    Money of this revision's price date, but for what was before.
+    """
+
+    previous: str
+    """The last revision."""
+    price_date_before: dt.date
+    base_before: float
+    contingency_before: float
+    level_before: int
+    """Target of the last revision, whole percent."""
+    class_before: int | None
+    percentiles_before: tuple[float, ...]
+    """Total of the last revision at P01 to P99."""
+    balance_before: float | None
+    """Contingency account on the last data date; None where none was kept."""
+    base_after: float
+    contingency_after: float
+    at_old_level: float
+    """Contingency that this revision would have at the last one's target."""
+    class_after: int | None
+    base_residual: float
+    contingency_residual: float
+    """What no step of the bridge explains."""
+    unexplained: tuple[tuple[str, float], ...]
+    """Packages whose base moved without a reason, and by how much."""
+    lacks_factor: bool
+    """Whether the price dates differ and no factor is given."""
+    retired: tuple[str, ...]
+    """Ids of the events that were closed or occurred."""
+    figures_differ: bool
+    """Whether anything that moves the money differs."""
+    unused_lines: tuple[int, ...]
+    """Lines of changes.csv that explain nothing."""
+
+
 @dataclass(frozen=True, kw_only=True)
 class Material:
     """Everything that is known about one estimate's contingency before the checks.
@@ -62,6 +102,8 @@ class Material:
     cross_check: CrossCheck
     funding: tuple[YearAmounts, ...] = ()
     """Years of the funding table; empty where none was computed."""
+    change: RevisionChange | None = None
+    """The way from the last revision; None where there is none."""
     robustness: Robustness | None = None
     """What the number rests on; None where it was not asked for."""
 

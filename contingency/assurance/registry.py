@@ -19,6 +19,7 @@ from contingency.assurance import (
     register,
     review,
     systemic,
+    tracking,
     treatment,
     trials,
 )
@@ -34,6 +35,7 @@ SUBJECTS: tuple[Subject, ...] = (
     "simulation",
     "level and presentation",
     "allocation and holding",
+    "revisions and account",
     "answers",
 )
 """The subjects in the order of the report."""
@@ -57,6 +59,7 @@ _DECLARED: tuple[AnyCheck, ...] = (
     *review.CHECKS,
     *holding.CHECKS,
     *phasing.CHECKS,
+    *tracking.CHECKS,
 )
 
 CHECKS: tuple[AnyCheck, ...] = tuple(

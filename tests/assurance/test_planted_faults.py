@@ -9,8 +9,9 @@ from tests.assurance.cases_base import CASES as BASE
 from tests.assurance.cases_events import CASES as EVENTS
 from tests.assurance.cases_level import CASES as LEVEL
 from tests.assurance.cases_ranges import CASES as RANGES
+from tests.assurance.cases_tracking import CASES as TRACKING
 
-CASES = (*BASE, *RANGES, *EVENTS, *LEVEL)
+CASES = (*BASE, *RANGES, *EVENTS, *LEVEL, *TRACKING)
 FAULTS = [case for case in CASES if case.severity is not None]
 TWINS = [case for case in CASES if case.severity is None]
 LISTS_ONLY = {"occurred-events"}
