@@ -37,16 +37,7 @@ from contingency.report.page_front import (
     answer_page,
     title_page,
 )
-from contingency.report.page_inputs import (
-    BasePage,
-    InputsPage,
-    MethodPage,
-    ScopePage,
-    base_page,
-    inputs_page,
-    method_page,
-    scope_page,
-)
+from contingency.report.page_inputs import InputsPage, inputs_page
 from contingency.report.page_results import (
     AllocationPage,
     CoveragePage,
@@ -58,6 +49,14 @@ from contingency.report.page_results import (
     drivers_page,
     result_page,
     split_page,
+)
+from contingency.report.page_scope import (
+    BasePage,
+    MethodPage,
+    ScopePage,
+    base_page,
+    method_page,
+    scope_page,
 )
 from contingency.report.wording import Amounts, date
 from contingency.setting.coverage import event_coverage
