@@ -183,8 +183,9 @@ def scores(cells: Strata, out: Array | None = None, scale: float = 1.0) -> Array
         value[:, tail] = scale * _tail_scores(offset[:, tail], lower=tail.stop)
     if out is None:
         out = np.empty_like(value)
-    for to, trial, score in zip(out, cells.trial, value, strict=True):
-        to[trial] = score
+    # One assignment for all rows: a short one would hold the interpreter's lock.
+    first = np.arange(0, value.size, BLOCK)[:, None]
+    out.reshape(-1)[cells.trial + first] = value
     return out
 
 
