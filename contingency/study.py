@@ -3,14 +3,19 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, fields, replace
+from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
+import numpy as np
+
 from contingency.assurance.findings import CheckOutcome, Finding
-from contingency.assurance.material import Material
+from contingency.assurance.material import Material, RevisionChange
 from contingency.assurance.robustness import what_it_rests_on
 from contingency.assurance.run import run_checks
 from contingency.estimate.nouns import Estimate, Level
+from contingency.quantities.percentiles import percentile
 from contingency.results import results_of
+from contingency.setting.account import account_of
 from contingency.setting.allocation import allocate, second_opinion
 from contingency.setting.drivers import find_drivers
 from contingency.setting.levels import (
@@ -23,6 +28,10 @@ from contingency.simulation.cross_check import cross_check
 from contingency.simulation.engine import BlockRunner, Progress, simulate
 from contingency.simulation.exact import ExactMoments, exact_moments
 from contingency.simulation.result import Simulation
+from contingency.tracking.compare import Comparison, compare
+from contingency.tracking.drawdown import Drawdown
+from contingency.tracking.drawdown import drawdown as find_drawdown
+from contingency.tracking.families import Family
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -37,6 +46,18 @@ class Study(Material):
 
     findings: tuple[Finding, ...]
     checks_run: tuple[CheckOutcome, ...]
+    comparison: Comparison | None = None
+    """With the previous revision, where one was given."""
+
+    @cached_property
+    def drawdown(self) -> Drawdown | None:
+        """The contingency account against the need; None where none is kept.
+
+        Computed when it is first asked for: its forecast takes some runs.
+        """
+        if not self.estimate.account:
+            return None
+        return find_drawdown(self.estimate, total=self.simulation.total)
 
     def results(self) -> dict[str, Any]:
         """Return the results contract, ready for JSON (docs/results.md)."""
@@ -74,6 +95,7 @@ class Study(Material):
 def run_study(
     estimate: Estimate,
     *,
+    previous: Estimate | None = None,
     threads: int = 1,
     progress: Progress | None = None,
     runner: BlockRunner | None = None,
@@ -84,6 +106,8 @@ def run_study(
     ----------
     estimate : Estimate
         As read by `read_estimate`; price-date money.
+    previous : Estimate, optional
+        The revision before; the bridge between the two is then part of the study.
     threads : int
         Blocks simulated at the same time; changes no figure.
     progress : callable, optional
@@ -112,10 +136,18 @@ def run_study(
         estimate, threads=threads, progress=progress, runner=runner, model=model
     )
     material = _material(estimate, simulation, exact_moments(model))
+    comparison = None
+    if previous is not None:
+        comparison = compare(
+            previous, estimate, threads=threads, later_total=simulation.total
+        )
+        material = replace(material, change=_change(previous, comparison))
     material = replace(material, robustness=what_it_rests_on(material))
     findings, checks_run = run_checks(material)
     known = {f.name: getattr(material, f.name) for f in fields(material)}
-    return Study(**known, findings=findings, checks_run=checks_run)
+    return Study(
+        **known, findings=findings, checks_run=checks_run, comparison=comparison
+    )
 
 
 def _material(
@@ -148,6 +180,42 @@ def _material(
         correlation_repair=simulation.correlation_repair,
         cross_check=cross_check(estimate, simulation, exact, percents),
     )
+
+
+def _change(previous: Estimate, found: Comparison) -> RevisionChange:
+    """Return what the checks must know of the way from the last revision."""
+    bridge = found.bridge
+    unexplained = bridge.step(Family.UNEXPLAINED)
+    account = account_of(previous)
+    ordered = np.sort(bridge.before_total)
+    base_gap, contingency_gap = bridge.residual
+    return RevisionChange(
+        previous=previous.revision,
+        price_date_before=previous.price_date,
+        base_before=bridge.before.base,
+        contingency_before=bridge.before.contingency,
+        level_before=bridge.before.percent,
+        class_before=previous.estimate_class,
+        percentiles_before=tuple(percentile(ordered, p) for p in range(1, 100)),
+        balance_before=None if account is None else account.balance,
+        base_after=bridge.after.base,
+        contingency_after=bridge.after.contingency,
+        at_old_level=bridge.at_old_level,
+        class_after=found.later.estimate_class,
+        base_residual=base_gap,
+        contingency_residual=contingency_gap,
+        unexplained=tuple((row.id, row.base) for row in unexplained.rows)
+        if unexplained
+        else (),
+        lacks_factor=found.lacks_factor,
+        retired=tuple(r.id for r in found.risks if r.movement in _RETIRED),
+        figures_differ=any(s.family not in _CHANCE_OR_LEVEL for s in bridge.steps),
+        unused_lines=tuple(line.line for line in found.unused),
+    )
+
+
+_RETIRED = {"closed", "occurred", "left out"}
+_CHANCE_OR_LEVEL = {Family.METHOD, Family.SAMPLING, Family.LEVEL}
 
 
 def _frame(rows: tuple[Any, ...]) -> pd.DataFrame:

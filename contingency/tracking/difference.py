@@ -13,6 +13,7 @@ from dataclasses import dataclass
 from contingency.estimate.nouns import Change, Estimate, Noun
 from contingency.tracking.cells import Cells, cells_of, cells_of_header
 from contingency.tracking.matching import Match
+from contingency.tracking.restating import is_price_line
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -86,18 +87,14 @@ def _is_about(change: Change, key: str) -> bool:
     It names the key or its heading; without a name it is about what the figures are
     computed from.
     """
+    if is_price_line(change):
+        return key == "price_date"
     if not change.id:
         return key in _COMPUTED_FROM
     return change.id in re.split("[. ]", key)
 
 
-_COMPUTED_FROM = {
-    "price_date",
-    "contingency.target",
-    "ends",
-    "general_dependence",
-    "run.seed",
-}
+_COMPUTED_FROM = {"contingency.target", "ends", "general_dependence"}
 
 
 def _successions(match: Match) -> list[Difference]:
