@@ -124,7 +124,7 @@ def _rows(
         before, after = old.get(row), new.get(row)
         if before is None or after is None:
             title = (after or before or {}).get("name", "")
-            states = ("", title or "new") if before is None else (title or "there", "")
+            states = ("", title or "there") if before is None else (title or "there", "")
             found.append(_difference(name, row, "row", *states, said))
             continue
         for field in dict.fromkeys((*after, *before)):
