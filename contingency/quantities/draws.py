@@ -184,8 +184,8 @@ def scores(cells: Strata, out: Array | None = None, scale: float = 1.0) -> Array
     if out is None:
         out = np.empty_like(value)
     # One assignment for all rows: a short one would hold the interpreter's lock.
-    first = np.arange(0, value.size, BLOCK)[:, None]
-    out.reshape(-1)[cells.trial + first] = value
+    start = np.arange(0, value.size, BLOCK)[:, None]
+    out.reshape(-1)[cells.trial + start] = value
     return out
 
 
