@@ -224,7 +224,7 @@ def _content(name: str, spec: Any, most: int) -> bytes:  # noqa: ANN401  (as abo
     stream = streams[0]
     packing = _packing(stream)
     raw: bytes = stream.read_raw_bytes()
-    if packing is None:
+    if packing is None or not raw:
         content = raw
     elif packing == "/FlateDecode":
         unpack = zlib.decompressobj()
