@@ -9,7 +9,7 @@ from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
-from contingency.cli import estimates, offices
+from contingency.cli import estimates, offices, revisions
 from contingency.cli.console import CAUTION
 from contingency.version import VERSION
 
@@ -32,6 +32,7 @@ def make_parser() -> argparse.ArgumentParser:
     parser.add_argument("--version", action="version", version=f"contingency {VERSION}")
     commands = parser.add_subparsers(dest="command", required=True, metavar="COMMAND")
     _add_estimate_commands(commands)
+    _add_revision_commands(commands)
     _add_office_commands(commands)
     return parser
 
@@ -97,6 +98,46 @@ def _add_estimate_commands(commands: Any) -> None:  # noqa: ANN401  (argparse hi
     calibrate.add_argument(
         "--group", metavar="NAME", default="", help="only projects of this group"
     )
+
+
+def _add_revision_commands(commands: Any) -> None:  # noqa: ANN401  (argparse hides it)
+    compare = _command(
+        commands,
+        "compare",
+        revisions.compare,
+        "explain every step from an earlier revision to a later one",
+        "contingency compare rev-b rev-c",
+    )
+    compare.add_argument(
+        "earlier", type=Path, metavar="EARLIER", help="folder of the earlier revision"
+    )
+    compare.add_argument(
+        "later", type=Path, metavar="LATER", help="folder of the later revision"
+    )
+    compare.add_argument(
+        "--order",
+        choices=("average", "sequence"),
+        metavar="ORDER",
+        default="average",
+        help="average the effect of a family over all orders, or take the published "
+        "order alone (default: average)",
+    )
+    compare.add_argument(
+        "--issued",
+        type=Path,
+        metavar="RESULTS.json",
+        help="results.json of the earlier revision as it was issued",
+    )
+    _add_threads(compare)
+    drawdown = _command(
+        commands,
+        "drawdown",
+        revisions.drawdown,
+        "set what is left of the contingency against what remaining work needs",
+        "contingency drawdown rev-c",
+    )
+    _add_estimate(drawdown)
+    _add_threads(drawdown)
 
 
 def _add_office_commands(commands: Any) -> None:  # noqa: ANN401  (argparse hides it)
