@@ -58,7 +58,7 @@ def stream_key(seed: int, name: str, block: int) -> Words:
     """Return the (2,) Philox key of one stream."""
     text = f"contingency-draws/1|{seed}|{block}|{name}"
     digest = blake2b(text.encode("utf-8"), digest_size=16).digest()
-    return np.frombuffer(digest, dtype="<u8").astype(np.uint64)
+    return np.frombuffer(digest, dtype="<u8")
 
 
 class Source:
@@ -76,13 +76,16 @@ class Source:
         self._state["buffer_pos"] = 4
         self._state["has_uint32"] = 0
         self._state["uinteger"] = 0
+        # The generator copies what it is given, so these two are filled anew each time.
+        self._key = np.zeros(2, dtype=np.uint64)
+        self._state["state"] = {
+            "counter": np.zeros(4, dtype=np.uint64),
+            "key": self._key,
+        }
 
     def raw(self, name: str, block: int) -> Words:
         """Return the first 4,096 raw numbers of a stream, (n,) of 64-bit words."""
-        self._state["state"] = {
-            "counter": np.zeros(4, dtype=np.uint64),
-            "key": stream_key(self._seed, name, block),
-        }
+        self._key[:] = stream_key(self._seed, name, block)
         self._generator.state = self._state
         return self._generator.random_raw(BLOCK)
 
