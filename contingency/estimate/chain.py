@@ -5,8 +5,9 @@ from __future__ import annotations
 from pathlib import Path
 
 from contingency.errors import NoPrevious, RevisionCircle
+from contingency.estimate.earlier import files_of_previous
 from contingency.estimate.nouns import Estimate
-from contingency.estimate.reading import read_estimate
+from contingency.estimate.reading import read_estimate, read_held_estimate
 
 MOST_REVISIONS = 200
 """Revisions of one chain.  A choice of ours: one a month for sixteen years."""
@@ -51,4 +52,30 @@ def read_chain(folder: Path | str) -> tuple[Estimate, ...]:
         here = named
         passed.append(named.resolve())
         chain.append(read_estimate(named))
+    return tuple(reversed(chain))
+
+
+def previous_of(estimate: Estimate) -> Estimate | None:
+    """Return the revision just before, from the files that travel with an estimate.
+
+    None where none travels with it: the estimate is the first revision, or `previous`
+    names a folder that was not there or could not be read.
+
+    Raises
+    ------
+    UnusableEstimate
+        unusable-estimate.  The files that are carried are no sound estimate.
+    """
+    files = files_of_previous(estimate.sources)
+    if not files:
+        return None
+    where = f"the revision before {estimate.revision}"
+    return read_held_estimate(files, where=where)
+
+
+def carried_chain(estimate: Estimate) -> tuple[Estimate, ...]:
+    """Return the estimate and all revisions that travel with it, the oldest first."""
+    chain = [estimate]
+    while (before := previous_of(chain[-1])) is not None:
+        chain.append(before)
     return tuple(reversed(chain))

@@ -27,6 +27,7 @@ _LEFT_OUT = {
     "events",
     "causes",
     "correlations",
+    "price_series",
     "changes",
     "account",
     "account_rule",

@@ -15,7 +15,14 @@ from contingency.tracking.bridge import IssuedFigures, Position, Step
 from contingency.tracking.compare import Comparison, Revision, compare
 from contingency.tracking.difference import Difference
 from contingency.tracking.risks import RiskMovement, RiskState
-from contingency.tracking.text import about, amount, figure, table, wrapped
+from contingency.tracking.text import (
+    Rounder,
+    about,
+    amount,
+    rounder,
+    table,
+    wrapped,
+)
 
 FORMAT = "contingency-comparison/1"
 
@@ -121,6 +128,7 @@ def read_issued(path: Path) -> IssuedFigures:
 def comparison_object(found: Comparison) -> dict[str, Any]:
     """Return a comparison, ready for JSON; money of the later price date, unrounded."""
     bridge = found.bridge
+    money = rounder(bridge.after.total)
     return {
         "format": FORMAT,
         "project": found.project,
@@ -130,18 +138,18 @@ def comparison_object(found: Comparison) -> dict[str, Any]:
         "order": bridge.order,
         "method": found.method,
         "run": {"seed": bridge.seed, "blocks": bridge.blocks},
-        "before": _position(bridge.before),
-        "after": _position(bridge.after),
-        "at_old_level": figure(bridge.at_old_level),
-        "steps": [_step(step) for step in bridge.steps],
+        "before": _position(bridge.before, money),
+        "after": _position(bridge.after, money),
+        "at_old_level": money(bridge.at_old_level),
+        "steps": [_step(step, money) for step in bridge.steps],
         "residual": {
-            "base": round(bridge.residual[0], 2) or 0.0,
-            "contingency": round(bridge.residual[1], 2) or 0.0,
+            "base": money(bridge.residual[0]),
+            "contingency": money(bridge.residual[1]),
         },
         "restated": found.is_restated,
         "lacks_factor": found.lacks_factor,
-        "unexplained_base": figure(found.unexplained_base),
-        "risks": [_risk(risk) for risk in found.risks],
+        "unexplained_base": money(found.unexplained_base),
+        "risks": [_risk(risk, money) for risk in found.risks],
         "differences": [_difference(line) for line in found.differences],
         "unused_changes": [
             {"line": c.line, "file": c.file, "id": c.id, "reason": c.reason}
@@ -161,48 +169,48 @@ def _revision(revision: Revision) -> dict[str, Any]:
     }
 
 
-def _position(position: Position) -> dict[str, Any]:
+def _position(position: Position, money: Rounder) -> dict[str, Any]:
     return {
         "level": f"P{position.percent:02d}",
-        "base": figure(position.base),
-        "contingency": figure(position.contingency),
-        "total": figure(position.total),
+        "base": money(position.base),
+        "contingency": money(position.contingency),
+        "total": money(position.total),
     }
 
 
-def _step(step: Step) -> dict[str, Any]:
+def _step(step: Step, money: Rounder) -> dict[str, Any]:
     return {
         "family": step.family.value,
         "heading": step.family.heading,
-        "base": figure(step.base),
-        "contingency": figure(step.contingency),
-        "total": figure(step.total),
-        "noise": figure(step.noise),
+        "base": money(step.base),
+        "contingency": money(step.contingency),
+        "total": money(step.total),
+        "noise": money(step.noise),
         "within_noise": step.is_within_noise,
         "rows": [
             {
                 "file": row.file,
                 "id": row.id,
                 "name": row.name,
-                "base": figure(row.base),
-                "contingency": figure(row.contingency),
+                "base": money(row.base),
+                "contingency": money(row.contingency),
             }
             for row in step.rows
         ],
     }
 
 
-def _risk(risk: RiskMovement) -> dict[str, Any]:
+def _risk(risk: RiskMovement, money: Rounder) -> dict[str, Any]:
     return {
         "id": risk.id,
         "name": risk.name,
         "kind": risk.kind,
         "movement": risk.movement,
-        "old": _state(risk.old),
-        "new": _state(risk.new),
-        "contingency": figure(risk.contingency),
-        "released": figure(risk.released),
-        "base": figure(risk.base),
+        "old": _state(risk.old, money),
+        "new": _state(risk.new, money),
+        "contingency": money(risk.contingency),
+        "released": money(risk.released),
+        "base": money(risk.base),
         "reason": risk.reason,
         "by": risk.by,
         "on": risk.on.isoformat() if risk.on else None,
@@ -210,14 +218,14 @@ def _risk(risk: RiskMovement) -> dict[str, Any]:
     }
 
 
-def _state(state: RiskState | None) -> dict[str, Any] | None:
+def _state(state: RiskState | None, money: Rounder) -> dict[str, Any] | None:
     if state is None:
         return None
     return {
         "status": state.status,
         "use": state.use,
         "chance": state.chance,
-        "mean_impact": None if state.mean_impact is None else figure(state.mean_impact),
+        "mean_impact": None if state.mean_impact is None else money(state.mean_impact),
     }
 
 

@@ -45,6 +45,7 @@ def differences(match: Match) -> tuple[Difference, ...]:
         ("systemic", old.systemic, new.systemic),
         ("events", old.events, new.events),
         ("causes", old.causes, new.causes),
+        ("prices", old.price_series, new.price_series),
     ):
         found += _rows(match, file, _table(before), _table(after))
     found += _rows(match, "correlations", _pairs(old), _pairs(new))
@@ -124,7 +125,9 @@ def _rows(
         before, after = old.get(row), new.get(row)
         if before is None or after is None:
             title = (after or before or {}).get("name", "")
-            states = ("", title or "there") if before is None else (title or "there", "")
+            states = (
+                ("", title or "there") if before is None else (title or "there", "")
+            )
             found.append(_difference(name, row, "row", *states, said))
             continue
         for field in dict.fromkeys((*after, *before)):

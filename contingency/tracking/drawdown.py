@@ -15,7 +15,6 @@ from numpy.typing import NDArray
 
 from contingency.errors import NoAccount
 from contingency.estimate.nouns import Estimate
-from contingency.quantities.draws import BLOCK
 from contingency.quantities.percentiles import percentile
 from contingency.setting.account import Account, account_of, minimum_on
 from contingency.simulation.totals import simulate_totals
@@ -25,8 +24,9 @@ Array = NDArray[np.float64]
 
 MOST_POINTS = 24
 """Days of the forecast at most; a choice of ours."""
-FORECAST_BLOCKS = 16
-"""Blocks of each day of the forecast: 65,536 trials with common random numbers."""
+FORECAST_BLOCKS = 4
+"""Blocks of each day of the forecast: 16,384 trials with common random numbers, of
+which only the difference to today counts."""
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -139,7 +139,7 @@ def drawdown(
         need_90=percentile(ordered, 90) - estimate.base,
         need_95=percentile(ordered, 95) - estimate.base,
         minimum=minimum_on(estimate.account_rule, estimate.data_date),
-        forecast=_forecast(estimate, need, total.size // BLOCK, threads),
+        forecast=_forecast(estimate, need, threads),
         without_window=without_window(estimate),
         not_drawn=tuple(
             event.label
@@ -157,24 +157,22 @@ def drawdown(
 
 
 def _forecast(
-    estimate: Estimate, need: float, blocks: int, threads: int
+    estimate: Estimate, need: float, threads: int
 ) -> tuple[ForecastPoint, ...]:
-    """Return the need on the days to come, today's first."""
+    """Return the need on the days to come, today's first.
+
+    Today's need is the one that is reported; later ones differ from it as they do in
+    fewer trials that all days share.
+    """
     days = _days(estimate)
     if not days:
         return ()
     rule = estimate.account_rule
     named = {point.on: point.name for point in rule.minimum}
-    # Today's need is the one that is reported; the days to come follow its run.
+    now = _need(estimate, threads)
     needs = {estimate.data_date: need}
     for day in days:
-        total = simulate_totals(
-            carried_forward(estimate, day),
-            blocks=min(blocks, FORECAST_BLOCKS),
-            threads=threads,
-        )
-        ordered = np.sort(total, axis=None)
-        needs[day] = percentile(ordered, estimate.contingency.target) - estimate.base
+        needs[day] = need + _need(carried_forward(estimate, day), threads) - now
     return tuple(
         ForecastPoint(
             day=day,
@@ -184,6 +182,13 @@ def _forecast(
         )
         for day, amount in needs.items()
     )
+
+
+def _need(estimate: Estimate, threads: int) -> float:
+    """Return the contingency at the target in the trials of the forecast."""
+    total = simulate_totals(estimate, blocks=FORECAST_BLOCKS, threads=threads)
+    ordered = np.sort(total, axis=None)
+    return percentile(ordered, estimate.contingency.target) - estimate.base
 
 
 def _days(estimate: Estimate) -> list[dt.date]:

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+import math
 import textwrap
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 
 DIGITS = 12
 """Significant digits of a figure in a result object, as in results.json."""
@@ -12,6 +13,22 @@ DIGITS = 12
 def figure(value: float) -> float:
     """Return a figure to twelve significant digits."""
     return float(f"{value:.{DIGITS}g}") or 0.0
+
+
+Rounder = Callable[[float], float]
+
+
+def rounder(largest: float) -> Rounder:
+    """Return what rounds money to what twelve digits of the largest amount leave.
+
+    A step is the difference of two large figures: its own twelve digits would hold
+    some that depend on the order in which a processor adds.
+
+    >>> rounder(260_964_818.7)(596_213.123456)
+    596213.123
+    """
+    digits = DIGITS - 1 - math.floor(math.log10(max(abs(largest), 1.0)))
+    return lambda value: round(value, max(digits, 0)) + 0.0
 
 
 def amount(value: float, step: float = 1.0) -> str:
