@@ -14,6 +14,7 @@ from __future__ import annotations
 import io
 import re
 import zlib
+from collections import Counter
 from collections.abc import Iterator
 from contextlib import contextmanager
 from dataclasses import dataclass
@@ -32,7 +33,8 @@ LARGEST_PDF = 256 * 2**20
 report of 300 packages has (about 1 MB)."""
 LARGEST_FILE = 64 * 2**20
 LARGEST_SUM = 192 * 2**20
-MOST_FILES = 400
+MOST_FILES = 2000
+"""Earlier revisions travel with a report, so that there may be many."""
 MOST_NODES = 4000
 """Of the tree that lists the files."""
 DEEPEST_TREE = 12
@@ -70,9 +72,8 @@ def read_attachments(pdf: bytes) -> tuple[Attachment, ...]:
     with refusing_the_unforeseen(), opened(pdf) as document:
         specs = list(_listed(document))
         _refuse_files_outside(document, [spec for _, spec in specs])
-        names = [name for name, _ in specs]
-        for name in names:
-            if names.count(name) > 1:
+        for name, count in Counter(name for name, _ in specs).items():
+            if count > 1:
                 raise _refused(f'two files in it are called "{_shown(name)}".')
         found: list[Attachment] = []
         left = LARGEST_SUM
@@ -191,7 +192,7 @@ def _listed(document: pikepdf.Pdf) -> Iterator[tuple[str, Any]]:
         for key, spec in zip(pairs[::2], pairs[1::2], strict=True):
             files += 1
             if files > MOST_FILES:
-                raise _refused(f"it has more than {MOST_FILES} files in it.")
+                raise _refused(f"it has more than {MOST_FILES:,} files in it.")
             yield _name(key, spec), spec
 
 

@@ -33,7 +33,7 @@ def test_the_page_states_the_limits_that_hold():
     one, every = attachments.LARGEST_FILE // mega, attachments.LARGEST_SUM // mega
 
     assert f"{attachments.LARGEST_PDF // mega} MB for the PDF" in CHECKING
-    assert f"{attachments.MOST_FILES} files" in CHECKING
+    assert f"{attachments.MOST_FILES:,} files" in CHECKING
     assert f"{one} MB for one file and {every} MB for all" in CHECKING
     assert (Limits().read_seconds, Limits().compute_seconds) == (120.0, 3600.0)
     assert "two minutes to take it apart, an hour to compute" in CHECKING
