@@ -8,7 +8,7 @@ from pathlib import Path
 import pytest
 
 from contingency.estimate.evidence import COLUMNS as EVIDENCE
-from contingency.estimate.folder import CARRIED, LARGEST_EVIDENCE, LARGEST_READ
+from contingency.estimate.folder import LARGEST_EVIDENCE, LARGEST_READ
 from contingency.estimate.nouns import ShapeName
 from contingency.estimate.ranges import NEEDED
 from contingency.estimate.ratings import FILE as RATINGS
@@ -128,7 +128,6 @@ def test_the_files_are_those_that_are_read():
         "estimate.toml",
         *(layout.file for layout in LAYOUTS),
         RATINGS,
-        *CARRIED,
     }
 
 

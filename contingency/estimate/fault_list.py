@@ -15,6 +15,7 @@ FILE_ORDER = (
     "events.csv",
     "causes.csv",
     "correlations.csv",
+    "prices.csv",
     "changes.csv",
     "drawdown.csv",
     "history.csv",

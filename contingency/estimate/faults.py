@@ -468,6 +468,13 @@ class UpliftTooLow(Fault):
     law = "An uplift is at least -100%."
 
 
+class RateTooLow(Fault):
+    """A yearly price rate that leaves no price."""
+
+    slug = "rate-too-low"
+    law = "A price rate stays above -100 % a year, however low it is drawn."
+
+
 class ProbabilityOutOfRange(Fault):
     """A probability below 0 or above 1."""
 

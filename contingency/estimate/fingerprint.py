@@ -22,6 +22,7 @@ _IN_LISTS = {
     "shares": "package",
     "history": "id",
     "factors": "id",
+    "price_series": "id",
 }
 """Lists whose order says nothing, and the field that they are sorted by."""
 _IN_SETS = ("applies_to", "excludes", "packages")
@@ -127,5 +128,6 @@ def _evidence(estimate: Estimate) -> set[str]:
         *(risk.evidence.basis for risk in estimate.systemic),
         *(event.evidence.basis for event in estimate.events),
         *(cause.basis for cause in estimate.causes),
+        *(series.evidence.basis for series in estimate.price_series),
     ]
     return {name for basis in bases for name in named_files(basis)}

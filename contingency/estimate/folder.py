@@ -32,9 +32,6 @@ from contingency.estimate.nouns import SourceFile
 REQUIRED = ("estimate.toml", "packages.csv")
 """Files without which there is no estimate."""
 
-CARRIED = ("prices.csv",)
-"""Files that travel in the report and are not interpreted while reading."""
-
 LARGEST_READ = 8 * 2**20
 """Bytes of a file that is interpreted.  A choice of ours: a row of a table takes
 some 300 bytes, so this is well above twenty thousand rows."""
@@ -120,7 +117,7 @@ class EstimateFolder:
 
     def refuse_misnamed(self) -> None:
         """Note files that are not read only because their name is slightly off."""
-        known = (*FILE_ORDER, *CARRIED)
+        known = FILE_ORDER
         for name in sorted(self._names - set(known) - set(self._read)):
             if not name.lower().endswith((".csv", ".toml", ".csv.txt", ".toml.txt")):
                 continue

@@ -148,6 +148,7 @@ class WorkPackage(Noun):
     finish: dt.date | None = None
     spend: Literal["even", "early", "late", "bell"] | None = None
     prices: str = ""
+    """Id of the price series that escalates it; blank if none does."""
     price_basis: Literal["constant", "outturn"] | None = None
     price_date: dt.date | None = None
     holds_allowance: bool | None = None
@@ -282,6 +283,22 @@ class CommonCause(Noun):
     name: str
     basis: str = ""
     line: int
+
+
+class PriceSeries(Noun):
+    """How prices of one kind change from the price date on."""
+
+    id: str
+    name: str
+    rate: CostRange
+    """Compound change in one year, fraction: 0.03 for 3 % a year."""
+    evidence: Evidence = Evidence()
+    line: int
+
+    @property
+    def label(self) -> str:
+        """Id and name, as in messages."""
+        return f"{self.id} {self.name}".strip()
 
 
 class PairCorrelation(Noun):
@@ -583,6 +600,8 @@ class Estimate(Noun):
     """Total that is asked for, where it is not simply the target level."""
     budget_cap: float | None = None
     """A ceiling that was known before the analysis, price-date money."""
+    financial_year_starts: int | None = None
+    """Month in which a financial year begins, 1 to 12; None for calendar years."""
 
     contingency: ContingencyRule
     ends: Ends | None
@@ -601,6 +620,7 @@ class Estimate(Noun):
     events: tuple[RiskEvent, ...] = ()
     causes: tuple[CommonCause, ...] = ()
     correlations: tuple[PairCorrelation, ...] = ()
+    price_series: tuple[PriceSeries, ...] = ()
 
     changes: tuple[Change, ...] = ()
     """What changes.csv says about the way from the previous revision to this one."""

@@ -90,6 +90,8 @@ class PackageRules:
     ends: EndsRule
     causes: frozenset[str] | None
     """Ids of causes.csv; None where that file has faults that hide them."""
+    series: frozenset[str] | None
+    """Ids of prices.csv; None where that file has faults that hide them."""
     general_dependence: float
     """Correlation that all ranges share, 0 to 1."""
 
@@ -131,6 +133,7 @@ def _read_package(
     loads = _loads(row, rules)
     start, finish = row.window("start", "finish")
     spend = row.word("spend", PROFILES)
+    prices = _series(row, rules)
     price_basis = row.word("price_basis", PRICE_BASES)
     price_date = row.day("price_date")
     holds_allowance = row.yes("holds_allowance")
@@ -149,7 +152,7 @@ def _read_package(
         start=start,
         finish=finish,
         spend=cast("Spend", spend) if spend else None,
-        prices=row.text("prices"),
+        prices=prices,
         price_basis=cast("PriceBasis", price_basis) if price_basis else None,
         price_date=price_date,
         holds_allowance=holds_allowance,
@@ -211,6 +214,18 @@ def _group(row: Row) -> str:
         found = f"The group is {shown(group)}."
         row.refuse("group", Problem(IdReserved, found, "Give the group another name."))
     return group
+
+
+def _series(row: Row, rules: PackageRules) -> str:
+    """Return the id of the price series that escalates the package."""
+    text, known = row.text("prices"), rules.series
+    if text and known is not None and text not in known:
+        found = f"prices.csv has no series {shown(text)}."
+        if not known:
+            found = f"There is no prices.csv with the series {shown(text)}."
+        remedy = instead(text, known, "Add the series to prices.csv.")
+        row.refuse("prices", Problem(IdUnknown, found, remedy))
+    return text
 
 
 def _loads(row: Row, rules: PackageRules) -> tuple[Load, ...]:

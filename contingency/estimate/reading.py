@@ -17,11 +17,12 @@ from contingency.estimate import changes as changes_csv
 from contingency.estimate import events as events_csv
 from contingency.estimate import history as history_csv
 from contingency.estimate import packages as packages_csv
+from contingency.estimate import prices as prices_csv
 from contingency.estimate import ratings as ratings_toml
 from contingency.estimate import systemic as systemic_csv
 from contingency.estimate.fault_list import FaultList
 from contingency.estimate.fingerprint import fingerprint
-from contingency.estimate.folder import CARRIED, EstimateFolder
+from contingency.estimate.folder import EstimateFolder
 from contingency.estimate.links import tie
 from contingency.estimate.modelled import Models
 from contingency.estimate.nouns import Estimate, OutsideRule
@@ -36,6 +37,7 @@ LAYOUTS = (
     events_csv.LAYOUT,
     causes_csv.CAUSES,
     causes_csv.CORRELATIONS,
+    prices_csv.LAYOUT,
     changes_csv.LAYOUT,
     drawdown_csv.LAYOUT,
     history_csv.LAYOUT,
@@ -102,6 +104,8 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
     table = tables["causes.csv"]
     causes = causes_csv.read_causes(table, folder) if table else ()
     ends = _ends_rule(settings)
+    table = tables["prices.csv"]
+    series = prices_csv.read_prices(table, folder, ends) if table else ()
     packages = _packages(tables, folder, ends, settings)
     models = _models(tables["history.csv"], folder, settings)
     table = tables["systemic.csv"]
@@ -122,9 +126,6 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
     account = (
         drawdown_csv.read_account(table, tables["events.csv"], known) if table else ()
     )
-    for name in CARRIED:
-        if folder.has(name):
-            folder.carry(name)
     folder.refuse_misnamed()
     if faults or settings is None or packages is None:
         return None
@@ -143,6 +144,7 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
         events=events,
         causes=causes,
         correlations=pairs,
+        price_series=series,
         changes=changes,
         account=account,
         account_rule=settings.account_rule,
@@ -179,12 +181,24 @@ def _packages(
     settings: Settings | None,
 ) -> Packages | None:
     """Return what packages.csv holds; None where it cannot be read at all."""
-    table, causes = tables["packages.csv"], tables["causes.csv"]
+    table = tables["packages.csv"]
     if table is None:
         return None
-    known: frozenset[str] | None = frozenset()
-    if folder.has("causes.csv"):
-        known = causes.known_ids if causes else None
     dependence = settings.general_dependence if settings else None
-    rules = PackageRules(ends=ends, causes=known, general_dependence=dependence or 0.0)
+    rules = PackageRules(
+        ends=ends,
+        causes=_ids_in("causes.csv", tables, folder),
+        series=_ids_in("prices.csv", tables, folder),
+        general_dependence=dependence or 0.0,
+    )
     return packages_csv.read_packages(table, folder, rules)
+
+
+def _ids_in(
+    file: str, tables: dict[str, Table | None], folder: EstimateFolder
+) -> frozenset[str] | None:
+    """Return the ids of an optional table; None where its faults hide them."""
+    table = tables[file]
+    if table is not None:
+        return table.known_ids
+    return None if folder.has(file) else frozenset()

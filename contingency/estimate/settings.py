@@ -78,6 +78,7 @@ KEYS: dict[str, tuple[str, ...]] = {
         "request_base",
         "requested_total",
         "budget_cap",
+        "financial_year_starts",
     ),
     "contingency": ("target", "set_by", "reason", "rounding", "levels"),
     "contingency.levels": ("level", "purpose", "holder"),
@@ -251,6 +252,7 @@ def _header(section: Section) -> dict[str, Any]:
         "request_base": _amount(section, "request_base"),
         "requested_total": _amount(section, "requested_total"),
         "budget_cap": _amount(section, "budget_cap"),
+        "financial_year_starts": section.whole_within("financial_year_starts", 1, 12),
     }
 
 

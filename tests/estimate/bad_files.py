@@ -40,7 +40,7 @@ FILES = (
             "file-missing",
             (
                 "There is no estimate.toml in the folder; it holds causes.csv, "
-                "events.csv, hours.csv, packages.csv and systemic.csv."
+                "events.csv, hours.csv, packages.csv, prices.csv and systemic.csv."
             ),
         ),
     ),
@@ -52,7 +52,7 @@ FILES = (
             "file-missing",
             (
                 "There is no packages.csv in the folder; it holds causes.csv, "
-                "estimate.toml, events.csv, hours.csv and systemic.csv."
+                "estimate.toml, events.csv, hours.csv, prices.csv and systemic.csv."
             ),
         ),
     ),
@@ -64,8 +64,8 @@ FILES = (
             "file-missing",
             (
                 "There is no packages.csv in the folder; it holds causes.csv, "
-                "estimate.toml, events.csv, hours.csv, package.csv and "
-                "systemic.csv."
+                "estimate.toml, events.csv, hours.csv, package.csv, "
+                "prices.csv and systemic.csv."
             ),
         ),
         (

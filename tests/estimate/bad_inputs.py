@@ -44,7 +44,18 @@ def every_case() -> tuple[Bad, ...]:
     from tests.estimate.bad_history import HISTORY
     from tests.estimate.bad_links import LINKS
     from tests.estimate.bad_outside import OUTSIDE
+    from tests.estimate.bad_prices import PRICES
     from tests.estimate.bad_ranges import RANGES
     from tests.estimate.bad_settings import SETTINGS
 
-    return (*FILES, *SETTINGS, *CELLS, *RANGES, *LINKS, *EVENTS, *HISTORY, *OUTSIDE)
+    return (
+        *FILES,
+        *SETTINGS,
+        *CELLS,
+        *RANGES,
+        *LINKS,
+        *EVENTS,
+        *PRICES,
+        *HISTORY,
+        *OUTSIDE,
+    )

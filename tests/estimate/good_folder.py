@@ -270,11 +270,34 @@ CAUSES: list[Row] = [
     {"id": "site", "name": "Site conditions", "basis": "One hill"},
 ]
 
+PRICES: list[Row] = [
+    {
+        "id": "wages",
+        "name": "Engineers' wages",
+        "low": "1.5%",
+        "likely": "+2.5%",
+        "high": "4%",
+        "ends": "P10-P90",
+        "shape": "pert",
+        "basis": "Wage agreement",
+        "basis_kind": "data",
+        "given_by": "Cost engineer",
+        "given_on": "2026-04-02",
+    },
+    {
+        "id": "metal",
+        "name": "Metal work",
+        "shape": "discrete",
+        "outcomes": "-1%:0.25; 2%:0.5; 6%:0.25",
+    },
+]
+
 TABLES = {
     "packages.csv": PACKAGES,
     "systemic.csv": SYSTEMIC,
     "events.csv": EVENTS,
     "causes.csv": CAUSES,
+    "prices.csv": PRICES,
 }
 EVIDENCE = {"hours.csv": b"dome,hours\nA,900\nB,1100\n"}
 

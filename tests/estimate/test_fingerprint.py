@@ -6,6 +6,7 @@ import random
 import re
 import subprocess
 import sys
+from pathlib import Path
 
 import pytest
 from hypothesis import HealthCheck, given, settings
@@ -122,10 +123,9 @@ def test_order_and_dialect_change_nothing(
         swap("systemic.csv", "Works; P310", "P310;Works"),
         swap("events.csv", "P200:60%; P310:40%", "P310:40%; P200:60%"),
         swap("packages.csv", "P400,Permit", "# off\n\nP400,Permit"),
-        content("prices.csv", "not interpreted"),
         content("notes.txt", "not read"),
     ],
-    ids=range(15),
+    ids=range(14),
 )
 def test_what_means_the_same_has_the_same(edit, folder, good):
     """Spacing, comments, grouping of digits, order within a cell."""
@@ -185,9 +185,12 @@ def test_any_figure_changes_it(folder, good):
         setting('ends = "P10-P90"', 'ends = "P05-P95"'),
         setting("some_switch = true", "some_switch = false"),
         swap("causes.csv", "One hill", "One valley"),
+        swap("prices.csv", "Metal work", "Metal works"),
+        swap("packages.csv", "early,wages", "early,metal"),
+        setting("class = 3", "class = 3\nfinancial_year_starts = 4"),
         correlations(("P100", "P200", "0.3")),
     ],
-    ids=range(11),
+    ids=range(14),
 )
 def test_any_word_and_any_evidence_changes_it(edit, folder, good):
     """Names, bases, the way a figure is given, files that are named."""
@@ -234,3 +237,12 @@ def test_a_blank_column_says_nothing(folder, good):
     write_table(folder / "events.csv", rows)
 
     assert read_estimate(folder).fingerprint == good
+
+
+def test_an_estimate_without_prices_keeps_the_fingerprint_it_had():
+    """Computed before price series and financial years were read."""
+    example = Path(__file__).parents[2] / "example_estimates" / "buoy-tender-refit"
+
+    assert read_estimate(example / "rev-a").fingerprint == (
+        "9ecc407f949f5abc5762a6d4961ac63dde3b949852bffd0e1693bec17b76283a"
+    )

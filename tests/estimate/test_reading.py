@@ -357,8 +357,7 @@ def test_a_closed_event_may_keep_its_figures(folder):
 
 
 def test_everything_that_was_read_is_kept_byte_for_byte(folder):
-    """The report attaches these, evidence and uninterpreted files included."""
-    content("prices.csv", b"anything\xff")(folder)
+    """The report attaches these, evidence included."""
     content("notes.txt", b"not asked for")(folder)
 
     estimate = read_estimate(folder)
@@ -463,3 +462,22 @@ def test_a_string_is_a_path_too(folder):
     assert read_estimate(str(folder)).revision == "B"
     with pytest.raises(UnusableEstimate):
         read_estimate(str(folder) + "-that-is-not-there")
+
+
+def test_price_series_are_read_with_their_rates(folder):
+    """Rates are fractions a year; a package names its series."""
+    wages, metal = read_estimate(folder).price_series
+
+    assert (wages.id, wages.name) == ("wages", "Engineers' wages")
+    assert (wages.rate.low, wages.rate.likely, wages.rate.high) == (0.015, 0.025, 0.04)
+    assert wages.evidence.is_complete
+    assert metal.rate.outcomes == ((-0.01, 0.25), (0.02, 0.5), (0.06, 0.25))
+
+
+def test_a_year_is_a_calendar_year_unless_it_is_said(folder):
+    """None where nothing is said, so that old fingerprints stand."""
+    assert read_estimate(folder).financial_year_starts is None
+
+    setting("class = 3", "class = 3\nfinancial_year_starts = 4")(folder)
+
+    assert read_estimate(folder).financial_year_starts == 4
