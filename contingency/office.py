@@ -24,25 +24,20 @@ from contingency.errors import (
 from contingency.estimate.nouns import Estimate
 from contingency.estimate.reading import read_estimate
 from contingency.record import issue_note, register, sign_off_file, sign_offs
-from contingency.record.certificates import (
-    TEST_ONLY,
-    make_test_certificate,
-    open_certificate,
-)
 from contingency.record.chain import Entry, SignedBy
 from contingency.record.durable import write_durably
 from contingency.record.persons import same_person
 from contingency.record.sign_off_file import Content, SignOff, SignOffs
 from contingency.record.sign_offs import Role, RoleStanding
-from contingency.results import as_json
-from contingency.simulation.engine import Progress
-from contingency.study import Study, run_study
-from contingency.verify.report import Limits, verify_report
-from contingency.verify.verification import Verification
 from contingency.version import VERSION
 
 if TYPE_CHECKING:
+    # Imported where they are used: `check` asks for sign-offs and must be quick.
     from contingency.report.page_front import TypedSignOff
+    from contingency.simulation.engine import Progress
+    from contingency.study import Study
+    from contingency.verify.report import Limits
+    from contingency.verify.verification import Verification
 
 RESULTS = "results.json"
 
@@ -127,6 +122,9 @@ def sign_estimate(
     NoSuchRole, OtherSignatory, SamePerson, SignOffOutOfTurn, BusyRecord, DamagedRecord
         See `contingency.record.sign_offs.sign`.
     """
+    from contingency.results import as_json
+    from contingency.study import run_study
+
     estimate = read_estimate(folder)
     study = run_study(estimate, threads=threads, progress=progress)
     blocks = [*_stops(study), *_failed_cross_checks(study)]
@@ -191,39 +189,10 @@ def sign_off_standings(
 
 
 def typed_words(standings: Sequence[RoleStanding]) -> tuple[TypedSignOff, ...]:
-    """Return sign-offs as a report prints them: when, standing, conditions, comment."""
-    from contingency.report.page_front import TypedSignOff
-    from contingency.report.wording import date, sentence
+    """Return sign-offs as a draft prints them; see `contingency.issued`."""
+    from contingency.issued import typed_words as in_words
 
-    typed = []
-    for line in standings:
-        one = line.sign_off
-        if one is None:
-            continue
-        day = date(one.signed_at.date())
-        if line.standing == "lapsed":
-            noticed = f", noticed on {date(line.since.date())}" if line.since else ""
-            stands = (
-                f"Signed on {day}; lapsed: {', '.join(line.changed)} changed "
-                f"since{noticed}."
-            )
-        elif line.results_compared:
-            stands = f"Signed on {day} for these inputs and results."
-        else:
-            stands = f"Signed on {day} for these inputs."
-        extra = [("Condition", one.conditions), ("Comment", one.comment)]
-        typed.append(
-            TypedSignOff(
-                role=one.role,
-                name=one.name,
-                position=one.position,
-                statements=(
-                    stands,
-                    *(f"{what}: {sentence(words)}" for what, words in extra if words),
-                ),
-            )
-        )
-    return tuple(typed)
+    return in_words(standings)
 
 
 def roles_of(estimate: Estimate) -> tuple[Role, ...]:
@@ -292,6 +261,9 @@ def issue_estimate(
     AlreadyIssued, FolderInTheWay, BusyRecord, DamagedRecord
         See `contingency.record.register.issue`.
     """
+    from contingency.results import as_json
+    from contingency.study import run_study
+
     say = say or (lambda _step: None)
     estimate = read_estimate(folder)
     records = records or folder.resolve().parent
@@ -333,33 +305,17 @@ def _issued_files(
     place: register.Place,
     templates: Path | None,
 ) -> register.IssuedFiles:
+    from contingency.issued import issued_pdf
     from contingency.publish import REPORT, tables
-    from contingency.report.pdf import write_report
-    from contingency.report.typesetting import AttachedFile
 
     given = [line.sign_off for line in standings if line.sign_off]
-    extra = [
-        AttachedFile(
-            name=sign_off_file.FILE,
-            content=sign_off_file.written_sign_offs(SignOffs(given=tuple(given))),
-            description="Typed sign-offs",
-            relationship="Data",
-        ),
-        AttachedFile(
-            name=issue_note.NAME,
-            content=issue_note.written_note(place, project=study.estimate.project),
-            description="Place of this issue in the register",
-            relationship="Data",
-        ),
-    ]
-    pdf = write_report(
+    pdf = issued_pdf(
         study,
-        templates=templates,
-        created=place.issued_at,
-        draft=False,
         results=results,
-        extra_attachments=extra,
-        typed=typed_words(standings),
+        sign_offs=sign_off_file.written_sign_offs(SignOffs(given=tuple(given))),
+        note=issue_note.written_note(place, project=study.estimate.project),
+        created=place.issued_at,
+        templates=templates,
     )
     return register.IssuedFiles(
         files={REPORT: pdf, RESULTS: results, **tables(study)},
@@ -457,6 +413,7 @@ def seal_report(
         unusable-path.  The file cannot be read, or another one is in the way.
     """
     from contingency.record.attachments import read_attachments
+    from contingency.record.certificates import open_certificate
     from contingency.record.seal_check import check_seals
     from contingency.record.seals import seal, time_stamp_server
 
@@ -517,6 +474,8 @@ def write_test_certificate(
     UnusablePath
         unusable-path.  A file of that name is there already.
     """
+    from contingency.record.certificates import TEST_ONLY, make_test_certificate
+
     made = make_test_certificate(name, password=password, when=when)
     stem = f"{TEST_ONLY.lower().replace(' ', '-')}-{register.folder_name(name, 1)}"
     paths = (folder / f"{stem}.p12", folder / f"{stem}.pem")
@@ -602,6 +561,8 @@ def verify_file(
     UnreadableReport, TookTooLong, UnfitCertificate
         See `verify_report`.
     """
+    from contingency.verify.report import verify_report
+
     return verify_report(
         _bytes_of(path),
         when=when,

@@ -30,10 +30,11 @@ FLOORS = {
     "study": STUDY - {"study"},
     "report": STUDY,
     "record": GROUND,
-    "verify": STUDY | {"report", "record"},
+    "issued": STUDY | {"report", "record"},
+    "verify": STUDY | {"report", "record", "issued"},
     "publish": STUDY | {"report"},
-    "office": STUDY | {"report", "record", "verify", "publish"},
-    "cli": STUDY | {"report", "record", "verify", "publish", "office"},
+    "office": STUDY | {"report", "record", "issued", "verify", "publish"},
+    "cli": STUDY | {"report", "record", "issued", "verify", "publish", "office"},
     "__main__": {"cli"},
 }
 
