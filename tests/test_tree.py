@@ -81,3 +81,18 @@ def test_a_machine_path_would_be_noticed(folder):
     """The pattern above finds what it is there for, and leaves addresses alone."""
     assert PERSONAL.search(f"open('/{folder}/me/estimate')")
     assert not PERSONAL.search(f"example.org/{folder}/me")
+
+
+SKIPPED = re.compile(r"importorskip|pytest[.]skip|mark[.](?:skip|xfail)|[+]SKIP")
+
+
+def test_nothing_is_skipped():
+    """Neither a test nor an example of a docstring: what cannot run is not a check."""
+    found = [
+        f"{name}: {match.group()}"
+        for name, text in texts().items()
+        if name.startswith(("tests/", "contingency/")) and name != "tests/test_tree.py"
+        for match in SKIPPED.finditer(text)
+    ]
+
+    assert found == []

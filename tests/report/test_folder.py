@@ -1,9 +1,11 @@
 """Templates: what they may read, and how their faults are named."""
 
+import io
 import re
 import shutil
 from pathlib import Path
 
+import pypdf
 import pytest
 
 from contingency.errors import TemplateFault
@@ -196,9 +198,6 @@ def test_a_page_that_cannot_be_set_is_named(
 
 def test_an_own_folder_makes_an_own_report(folder, refit, results):
     """Own words, own colours, own picture; the figures are the same."""
-    pypdf = pytest.importorskip("pypdf", reason="listed under [test]")
-    import io
-
     (folder / "mark.svg").write_text(
         '<svg xmlns="http://www.w3.org/2000/svg" width="9" height="9"/>',
         encoding="utf-8",
