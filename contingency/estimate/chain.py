@@ -7,10 +7,11 @@ from pathlib import Path
 from contingency.errors import NoPrevious, RevisionCircle
 from contingency.estimate.earlier import files_of_previous
 from contingency.estimate.nouns import Estimate
-from contingency.estimate.reading import read_estimate, read_held_estimate
-
-MOST_REVISIONS = 200
-"""Revisions of one chain.  A choice of ours: one a month for sixteen years."""
+from contingency.estimate.reading import (
+    MOST_REVISIONS,
+    read_estimate,
+    read_held_estimate,
+)
 
 
 def read_chain(folder: Path | str) -> tuple[Estimate, ...]:

@@ -83,6 +83,11 @@ class EstimateFolder:
         faults.add(Place(str(path)), Problem(FolderNotFound, found, remedy))
         return None
 
+    @property
+    def names(self) -> frozenset[str]:
+        """Names of everything that lies in the folder."""
+        return self._names
+
     def has(self, name: str) -> bool:
         """Whether something of that name lies in the folder."""
         return name in self._names

@@ -11,6 +11,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from pathlib import Path
 
+from contingency.errors import UnusableEstimate
 from contingency.estimate import account as drawdown_csv
 from contingency.estimate import causes as causes_csv
 from contingency.estimate import changes as changes_csv
@@ -20,6 +21,7 @@ from contingency.estimate import packages as packages_csv
 from contingency.estimate import prices as prices_csv
 from contingency.estimate import ratings as ratings_toml
 from contingency.estimate import systemic as systemic_csv
+from contingency.estimate.earlier import is_earlier, pushed_back
 from contingency.estimate.fault_list import FaultList
 from contingency.estimate.fingerprint import fingerprint
 from contingency.estimate.folder import EstimateFolder
@@ -45,6 +47,10 @@ LAYOUTS = (
 """The tables of an estimate folder, in the order of docs/inputs.md."""
 
 
+MOST_REVISIONS = 200
+"""Revisions of one chain.  A choice of ours: one a month for sixteen years."""
+
+
 def read_estimate(folder: Path | str) -> Estimate:
     """Return the estimate that a folder holds.
 
@@ -57,16 +63,40 @@ def read_estimate(folder: Path | str) -> Estimate:
     Returns
     -------
     Estimate
-        Amounts in the estimate's currency at its price date; percent resolved.
+        Amounts in the estimate's currency at its price date; percent resolved.  Files
+        of the revisions before it are among its sources, where they can be read.
 
     Raises
     ------
     UnusableEstimate
         unusable-estimate.  Its `faults` are all problems of the folder, in file order.
     """
+    return _with_previous(Path(folder), frozenset())
+
+
+def _with_previous(path: Path, passed: frozenset[Path]) -> Estimate:
+    """Return the estimate in a folder with the files of the revisions before it.
+
+    They are carried where `previous` leads to folders that can be read; where it does
+    not, assurance says so, and `contingency.estimate.chain` says why.
+    """
     faults = FaultList()
-    here = EstimateFolder.open(Path(folder), faults)
-    return _sound(here, faults, where=str(folder))
+    estimate = _sound(EstimateFolder.open(path, faults), faults, where=str(path))
+    carries = any(is_earlier(source.name) for source in estimate.sources)
+    before = path / estimate.previous
+    passed |= {path.resolve()}
+    if carries or not estimate.previous or len(passed) >= MOST_REVISIONS:
+        return estimate
+    try:
+        if before.resolve() in passed:
+            return estimate
+        earlier = _with_previous(before, passed)
+    except (UnusableEstimate, OSError, ValueError):
+        return estimate
+    sources = (*estimate.sources, *pushed_back(earlier.sources))
+    return estimate.model_copy(
+        update={"sources": tuple(sorted(sources, key=lambda source: source.name))}
+    )
 
 
 def read_held_estimate(files: Mapping[str, bytes], *, where: str) -> Estimate:
@@ -126,6 +156,8 @@ def _read(folder: EstimateFolder, faults: FaultList) -> Estimate | None:
     account = (
         drawdown_csv.read_account(table, tables["events.csv"], known) if table else ()
     )
+    for name in sorted(filter(is_earlier, folder.names)):
+        folder.carry(name)
     folder.refuse_misnamed()
     if faults or settings is None or packages is None:
         return None
