@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from dataclasses import dataclass, fields, replace
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
@@ -12,6 +13,7 @@ from contingency.assurance.findings import CheckOutcome, Finding
 from contingency.assurance.material import Material, RevisionChange
 from contingency.assurance.robustness import what_it_rests_on
 from contingency.assurance.run import run_checks
+from contingency.estimate.chain import carried_chain, previous_of
 from contingency.estimate.nouns import Estimate, Level
 from contingency.quantities.percentiles import percentile
 from contingency.results import results_of
@@ -28,10 +30,14 @@ from contingency.simulation.cross_check import cross_check
 from contingency.simulation.engine import BlockRunner, Progress, simulate
 from contingency.simulation.exact import ExactMoments, exact_moments
 from contingency.simulation.result import Simulation
+from contingency.tracking.accounting import account_object
 from contingency.tracking.compare import Comparison, compare
+from contingency.tracking.comparing import summary_object
 from contingency.tracking.drawdown import Drawdown
 from contingency.tracking.drawdown import drawdown as find_drawdown
 from contingency.tracking.families import Family
+from contingency.tracking.trend import Trend
+from contingency.tracking.trend import trend as find_trend
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -59,9 +65,33 @@ class Study(Material):
             return None
         return find_drawdown(self.estimate, total=self.simulation.total)
 
+    @cached_property
+    def trend(self) -> Trend | None:
+        """All revisions that travel with the estimate; None if it is the only one."""
+        chain = carried_chain(self.estimate)
+        if len(chain) < 2:
+            return None
+        mine = self.estimate.revision
+        totals = {mine: self.simulation.total}
+        if self.comparison is not None:
+            totals[self.comparison.earlier.revision] = (
+                self.comparison.bridge.before_total
+            )
+        if len({estimate.revision for estimate in chain}) < len(chain):
+            totals = {}  # two revisions of one name: rather simulate again
+        counts: dict[str, int] = Counter(finding.severity for finding in self.findings)
+        return find_trend(chain, totals=totals, findings={mine: counts})
+
     def results(self) -> dict[str, Any]:
         """Return the results contract, ready for JSON (docs/results.md)."""
-        return results_of(self, self.findings, self.checks_run)
+        results = results_of(self, self.findings, self.checks_run)
+        changes = self.comparison
+        results["changes"] = None if changes is None else summary_object(changes)
+        account = account_of(self.estimate)
+        results["account"] = (
+            None if account is None else account_object(account, self.target)
+        )
+        return results
 
     def allocation_frame(self) -> pd.DataFrame:
         """Return the allocation by package, price-date money, unrounded."""
@@ -107,7 +137,8 @@ def run_study(
     estimate : Estimate
         As read by `read_estimate`; price-date money.
     previous : Estimate, optional
-        The revision before; the bridge between the two is then part of the study.
+        The revision before; without it the one that travels with the estimate.  The
+        bridge between the two is then part of the study.
     threads : int
         Blocks simulated at the same time; changes no figure.
     progress : callable, optional
@@ -137,6 +168,7 @@ def run_study(
     )
     material = _material(estimate, simulation, exact_moments(model))
     comparison = None
+    previous = previous or previous_of(estimate)
     if previous is not None:
         comparison = compare(
             previous, estimate, threads=threads, later_total=simulation.total

@@ -9,7 +9,13 @@ from typing import Any
 
 from contingency.estimate.nouns import Estimate
 from contingency.estimate.reading import read_estimate
-from contingency.setting.account import AccountLine, exceeds_delegation, lacking
+from contingency.setting.account import (
+    Account,
+    AccountLine,
+    exceeds_delegation,
+    lacking,
+)
+from contingency.setting.levels import FundingLevel
 from contingency.tracking.drawdown import Drawdown, drawdown
 from contingency.tracking.text import amount, figure, table
 
@@ -84,6 +90,28 @@ def drawdown_of_folder(
     return DrawdownResult(estimate=estimate, drawdown=found)
 
 
+def account_object(account: Account, target: FundingLevel) -> dict[str, Any]:
+    """Return what results.json holds of the account: sums, need and balance."""
+    need = target.contingency
+    return {
+        "day": account.day.isoformat(),
+        **_sums(account),
+        "need": figure(need),
+        "level": target.name,
+        "ratio": figure(account.balance / need) if need > 0.0 else None,
+    }
+
+
+def _sums(account: Account) -> dict[str, float]:
+    return {
+        "opening": figure(account.opening),
+        "added": figure(account.added),
+        "drawn": figure(account.drawn),
+        "released": figure(account.released),
+        "balance": figure(account.balance),
+    }
+
+
 def drawdown_object(found: Drawdown) -> dict[str, Any]:
     """Return a drawdown, ready for JSON; price-date money, unrounded."""
     account = found.account
@@ -93,13 +121,7 @@ def drawdown_object(found: Drawdown) -> dict[str, Any]:
         "revision": found.revision,
         "currency": found.currency,
         "day": account.day.isoformat(),
-        "account": {
-            "opening": figure(account.opening),
-            "added": figure(account.added),
-            "drawn": figure(account.drawn),
-            "released": figure(account.released),
-            "balance": figure(account.balance),
-        },
+        "account": _sums(account),
         "need": {
             "level": f"P{found.level:02d}",
             "amount": figure(found.need),

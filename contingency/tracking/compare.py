@@ -117,18 +117,21 @@ class Comparison:
             cumulative_curve(self.bridge.after_total),
         )
 
+    def printed_end(self, step: float, *, is_after: bool) -> tuple[float, float]:
+        """Return base and contingency of one end, in whole steps of `step` money."""
+        end = self.bridge.after if is_after else self.bridge.before
+        return round_amount(end.base, step), round_amount(end.contingency, step)
+
     def printed(self, step: float) -> tuple[PrintedStep, ...]:
         """Return the steps in whole steps of `step` money.
 
         Old figures rounded, plus these, are the new figures rounded, in both columns.
         """
-        bridge = self.bridge
+        before, after = (self.printed_end(step, is_after=x) for x in (False, True))
         columns = []
-        for name in ("base", "contingency"):
-            change = round_amount(getattr(bridge.after, name), step) - round_amount(
-                getattr(bridge.before, name), step
-            )
-            parts = [getattr(s, name) for s in bridge.steps]
+        for column, name in enumerate(("base", "contingency")):
+            parts = [getattr(s, name) for s in self.bridge.steps]
+            change = after[column] - before[column]
             columns.append(closed_parts(parts, step=step, total=change))
         return tuple(
             PrintedStep(base=base, contingency=contingency)

@@ -158,6 +158,14 @@ def comparison_object(found: Comparison) -> dict[str, Any]:
     }
 
 
+def summary_object(found: Comparison) -> dict[str, Any]:
+    """Return what results.json holds of a comparison: no cells, no idle risks."""
+    whole = comparison_object(found)
+    del whole["differences"], whole["unused_changes"]
+    whole["risks"] = [r for r in whole["risks"] if r["movement"] != "unchanged"]
+    return whole
+
+
 def _revision(revision: Revision) -> dict[str, Any]:
     return {
         "revision": revision.revision,
@@ -252,7 +260,7 @@ def comparison_lines(found: Comparison, step: float) -> list[str]:
     lines = [f"{found.project}, from revision {old} to {new}, in {found.currency}", ""]
     if found.is_empty:
         return [*lines, "Nothing that moves base or contingency differs."]
-    rows = [_end(f"Revision {old}, P{bridge.before.percent:02d}", bridge.before, step)]
+    rows = [_end(found, step, is_after=False)]
     for moved, printed in zip(bridge.steps, found.printed(step), strict=True):
         remark = ""
         if moved.noise >= 0.5 * step:
@@ -268,9 +276,7 @@ def comparison_lines(found: Comparison, step: float) -> list[str]:
                 remark.lstrip(", "),
             ]
         )
-    rows.append(
-        _end(f"Revision {new}, P{bridge.after.percent:02d}", bridge.after, step)
-    )
+    rows.append(_end(found, step, is_after=True))
     lines += table(["", "base", "contingency", "total", ""], rows)
     if bridge.before.percent != bridge.after.percent:
         at_old = amount(round(bridge.at_old_level / step) * step, step)
@@ -288,12 +294,12 @@ def _at_old_level(found: Comparison, amount_: str) -> str:
     )
 
 
-def _end(name: str, position: Position, step: float) -> list[str]:
-    base, contingency = (
-        round(value / step) * step for value in (position.base, position.contingency)
-    )
+def _end(found: Comparison, step: float, *, is_after: bool) -> list[str]:
+    end = found.bridge.after if is_after else found.bridge.before
+    revision = (found.later if is_after else found.earlier).revision
+    base, contingency = found.printed_end(step, is_after=is_after)
     return [
-        name,
+        f"Revision {revision}, P{end.percent:02d}",
         amount(base, step),
         amount(contingency, step),
         amount(base + contingency, step),

@@ -33,6 +33,44 @@ class Difference:
     """From changes.csv; blank where no line says why."""
     by: str
 
+    @property
+    def feeds_the_result(self) -> bool:
+        """Whether base or contingency are computed from the cell."""
+        return self.field in _FIGURES or self.field in _COMPUTED_FROM
+
+
+_FIGURES = {
+    "row",
+    "id",
+    "base",
+    "spent",
+    "low",
+    "likely",
+    "high",
+    "ends",
+    "shape",
+    "outcomes",
+    "causes",
+    "applies_to",
+    "kind",
+    "probability",
+    "happens",
+    "frequency",
+    "requires",
+    "excludes",
+    "status",
+    "use",
+    "after_probability",
+    "after_frequency",
+    "after_low",
+    "after_likely",
+    "after_high",
+    "after_outcomes",
+    "correlation",
+    "price_date",
+}
+"""Columns that a figure of the result is computed from."""
+
 
 def differences(match: Match) -> tuple[Difference, ...]:
     """Return every cell that differs, in the order of the files."""
