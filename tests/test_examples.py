@@ -1,5 +1,6 @@
 """The example estimates keep what their README promises."""
 
+import csv
 from pathlib import Path
 
 import pytest
@@ -213,8 +214,25 @@ def test_files_of_evidence_travel_with_the_estimate(large):
         "drawdown.csv",
         "cable-quotes.csv",
         "closed-links.csv",
+        "history.csv",
         "south-landfall-boreholes.csv",
     }
+
+
+def test_the_history_agrees_with_the_evidence_of_the_same_links(large):
+    """Thirteen closed links, eleven of them also behind S1, with the same overrun."""
+    content = next(s.content for s in large.sources if s.name == "closed-links.csv")
+    links = {
+        row["link"]: 1 + float(row["final_over_base_percent"]) / 100
+        for row in csv.DictReader(content.decode().splitlines())
+    }
+    history = {project.id: project for project in large.history}
+
+    assert len(history) == 13
+    assert len(links) == 11
+    assert {id_: history[id_].ratio for id_ in links} == pytest.approx(links)
+    assert large.outside_rule.is_comparable
+    assert sum(p.group == large.outside_rule.group for p in large.history) == 11
 
 
 def test_the_story_of_the_larger_example_is_in_its_files():

@@ -5,6 +5,7 @@ from pathlib import Path
 
 import pytest
 
+from contingency.assurance.outside_view import outside_view
 from contingency.estimate.reading import read_estimate
 from contingency.study import run_study
 
@@ -63,6 +64,34 @@ def test_the_guide_quotes_the_figures_of_the_example(study):
         f" EUR {held / million:.1f} million of it, {100 * held / cost:.0f} %."
     )
 
+    rested = study.robustness
+    changed = {one.slug: one.contingency / million for one in rested.what_ifs}
+    otherwise = (
+        f"With no systemic risks the contingency would be EUR"
+        f" {changed['no-systemic-risks']:.1f} million, with every range as if its ends"
+        f" were P20 and P80 EUR {changed['ends-at-fifths']:.1f} million."
+    )
+    seeds = f"It lies above {rested.seeds.below} of them."
+    breaks = next(one for one in rested.break_points if one.id == "E03")
+    rises = (
+        f"The chance of E03 would have to rise from {100 * breaks.now:.0f} % to"
+        f" {100 * breaks.breaks_at:.0f} %."
+    )
+    beside = outside_view(study).positions[-1].low_percent
+    outside = (
+        "The closed projects, taken alone, give the request a chance of"
+        f" {beside:.1f} %."
+    )
+
     quoted = re.findall(r"\*([^*]*\d[^*]*)\*", GUIDE)
 
-    assert quoted == [asked, enough, middle, unpaid]
+    assert quoted == [
+        asked,
+        enough,
+        middle,
+        unpaid,
+        otherwise,
+        seeds,
+        rises,
+        outside,
+    ]

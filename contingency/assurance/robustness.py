@@ -40,6 +40,24 @@ LEVEL_STEP = 10
 """Points by which the target level is moved, and by which it must fall to break."""
 
 
+ASSUMPTIONS = {
+    "ends-at-tenths": "ends",
+    "ends-at-fifths": "ends",
+    "pert-as-triangular": "shape",
+    "triangular-as-pert": "shape",
+    "no-dependence": "dependence",
+    "general-dependence-0": "dependence",
+    "general-dependence-25": "dependence",
+    "general-dependence-50": "dependence",
+    "no-systemic-risks": "systemic risks",
+    "all-before-treatment": "treatment",
+    "all-after-treatment": "treatment",
+    "chances-halved": "chances",
+    "chances-raised": "chances",
+}
+"""The assumption that each question is about."""
+
+
 @dataclass(frozen=True, kw_only=True, slots=True)
 class WhatIf:
     """One change to the estimate and what it does to the contingency at the target."""
@@ -79,11 +97,6 @@ class SeedTest:
         return sum(amount < self.issued for amount in self.contingencies)
 
     @property
-    def above(self) -> int:
-        """Number of fresh runs with a contingency at or above the issued one."""
-        return len(self.contingencies) - self.below
-
-    @property
     def lowest(self) -> float:
         """Smallest contingency of a fresh run, money."""
         return min(self.contingencies)
@@ -112,12 +125,24 @@ class Robustness:
     break_points: tuple[BreakPoint, ...]
     """The ten largest drivers, then the common judgements."""
 
+    @property
+    def asked(self) -> tuple[WhatIf, ...]:
+        """The questions that arise, in the order of the report."""
+        return tuple(one for one in self.what_ifs if one.contingency is not None)
+
     def largest(self, count: int = 3) -> tuple[WhatIf, ...]:
-        """Return the `count` assumptions with the largest effect, largest first."""
-        asked = [
-            w for w in self.what_ifs if w.contingency is not None and w.is_judgement
-        ]
-        return tuple(sorted(asked, key=lambda w: -abs(w.effect))[:count])
+        """Return the `count` assumptions that matter most, largest effect first.
+
+        Of several changes to one assumption the one with the largest effect stands
+        for it.  The largest driver left out is no assumption: drivers have a list of
+        their own.
+        """
+        ordered = sorted(self.asked, key=lambda one: -abs(one.effect))
+        first: dict[str, WhatIf] = {}
+        for one in ordered:
+            if one.slug in ASSUMPTIONS:
+                first.setdefault(ASSUMPTIONS[one.slug], one)
+        return tuple(first.values())[:count]
 
 
 def what_it_rests_on(material: Material) -> Robustness:

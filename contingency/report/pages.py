@@ -30,6 +30,7 @@ from contingency.report.page_assurance import (
     cross_check_page,
     record_page,
 )
+from contingency.report.page_evidence import EvidencePage, evidence_page
 from contingency.report.page_front import (
     AnswerPage,
     TitlePage,
@@ -38,6 +39,7 @@ from contingency.report.page_front import (
     title_page,
 )
 from contingency.report.page_inputs import InputsPage, inputs_page
+from contingency.report.page_outside import OutsidePage, outside_page
 from contingency.report.page_results import (
     AllocationPage,
     CoveragePage,
@@ -50,6 +52,7 @@ from contingency.report.page_results import (
     result_page,
     split_page,
 )
+from contingency.report.page_robustness import RobustnessPage, robustness_page
 from contingency.report.page_scope import (
     BasePage,
     MethodPage,
@@ -80,11 +83,14 @@ class Report:
     base: BasePage
     method: MethodPage
     inputs: InputsPage
+    evidence: EvidencePage
     result: ResultPage
     split: SplitPage
     allocation: AllocationPage
     drivers: DriversPage
     coverage: CoveragePage
+    robustness: RobustnessPage | None
+    outside: OutsidePage
     cross_checks: CrossCheckPage
     assurance: AssurancePage
     cautions: CautionsPage
@@ -135,6 +141,8 @@ def make_pages(
     picture, note = allocation_picture(
         study, printed, groups_of(study.allocation), look
     )
+    robustness, robustness_charts = robustness_page(study, printed, amounts, look)
+    outside, outside_charts = outside_page(study, printed, amounts, look)
     charts: dict[str, Chart] = {
         chart.name: chart
         for chart in (
@@ -142,6 +150,8 @@ def make_pages(
             composition(printed, amounts, look),
             picture,
             *driver_charts(study, printed, amounts, look),
+            *robustness_charts,
+            *outside_charts,
         )
     }
     moment = created.astimezone(dt.UTC)
@@ -165,6 +175,7 @@ def make_pages(
         base=base_page(study, printed, amounts),
         method=method_page(study),
         inputs=inputs_page(study, step=step),
+        evidence=evidence_page(study),
         result=result_page(study, printed, amounts, charts),
         split=split_page(study, printed, amounts),
         allocation=allocation_page(study, printed, amounts, picture, note),
@@ -182,6 +193,8 @@ def make_pages(
             large=large,
             thin=thin,
         ),
+        robustness=robustness,
+        outside=outside,
         # Small differences are the point here: whole units, not the report's steps.
         cross_checks=cross_check_page(
             study, Amounts(currency=estimate.currency, step=min(step, 1.0))

@@ -284,6 +284,15 @@ def clipped(text: str, length: int) -> str:
     return cut.rstrip(" ,;:.") + "…"
 
 
+def capital(text: str) -> str:
+    """Return `text` with a capital in front.
+
+    >>> capital("no systemic risks"), capital("")
+    ('No systemic risks', '')
+    """
+    return text[:1].upper() + text[1:]
+
+
 def sentence(text: str) -> str:
     """Return `text` with a capital in front and a full stop at its end.
 

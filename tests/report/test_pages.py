@@ -19,6 +19,7 @@ from contingency.report.page_inputs import entered_step
 from contingency.report.pages import Report, make_pages
 from contingency.results import as_json
 from contingency.study import run_study
+from tests.report.closed_refits import beside_others
 from tests.report.conftest import CREATED
 from tests.report.ship_refit import ship_refit, with_fixed_findings
 
@@ -99,11 +100,12 @@ def correlated():
 
 @pytest.fixture(scope="module")
 def studies(refit):
-    """Three studies that between them fill every part of every page."""
+    """Four studies that between them fill every part of every page."""
     return [
         with_fixed_findings(refit),
         run_study(bare()),
         run_study(correlated()),
+        run_study(beside_others()),
     ]
 
 
@@ -228,6 +230,7 @@ def test_contents_name_every_chapter_in_order():
     import re
 
     contents = (FOLDER / "contents.html").read_text(encoding="utf-8")
+    contents, aside = contents.split("</ol>")
     links = re.findall(r'<a href="#([\w-]+)">([^<]+)</a>', contents)
     included = re.findall(
         r'include "([\w-]+\.html)"', (FOLDER / ENTRY).read_text(encoding="utf-8")
@@ -241,6 +244,8 @@ def test_contents_name_every_chapter_in_order():
     assert [anchor for anchor, _ in links] == [anchor for anchor, _ in headings]
     for (_, link), (_, heading) in zip(links, headings, strict=True):
         assert heading.startswith(link), link
+    ids = {anchor for anchor, _ in headings}
+    assert set(re.findall(r'href="#([\w-]+)"', aside)) <= ids
 
 
 def test_what_is_typed_cannot_become_markup(refit, look):

@@ -370,7 +370,7 @@ def test_the_document_describes_itself(draft):
         assert str(pdf.docinfo.CreationDate) == "D:20310520093000Z"
         assert titles[:2] == ["The answer", "Contents"]
         assert titles[2].startswith("1 ")
-        assert len(titles) == 18
+        assert len(titles) == 20
 
 
 def test_all_letters_are_embedded_and_from_our_fonts(draft):
