@@ -18,6 +18,7 @@ from contingency.assurance.robustness import Robustness
 from contingency.estimate.nouns import Answer
 from contingency.quantities.predictive import LognormalFit
 from contingency.setting.allocation import Split
+from contingency.setting.funding import Outturn
 from contingency.setting.levels import FundingLevel
 from contingency.version import VERSION
 
@@ -81,7 +82,8 @@ def results_of(
             {"check": check.check, "title": check.title, "outcome": check.outcome}
             for check in checks_run
         ],
-        "funding": None,
+        "funding": _funding(study),
+        "outturn": _outturn(study.outturn),
         "evidence": _evidence(study),
         "robustness": _robustness(study.robustness),
         "outside_view": _outside(study),
@@ -201,6 +203,46 @@ def _cross_check(study: Material) -> dict[str, Any]:
             for level in check.levels
         ],
         "passed": check.passed,
+    }
+
+
+def _funding(study: Material) -> list[dict[str, Any]] | None:
+    """Return the funding table; base and contingency in price-date money."""
+    if not study.funding:
+        return None
+    return [
+        {
+            "year": year.year,
+            "base": figure(year.base),
+            "contingency": figure(year.contingency),
+            "escalation_on_base": figure(year.escalation_on_base),
+            "escalation_on_contingency": figure(year.escalation_on_contingency),
+            "total": figure(year.total),
+        }
+        for year in study.funding
+    ]
+
+
+def _outturn(outturn: Outturn | None) -> dict[str, Any] | None:
+    """Return how sure the funding table is, in money of the years of spending."""
+    if outturn is None:
+        return None
+    return {
+        "funding": figure(outturn.funding),
+        "chance_funding_is_enough": figure(outturn.chance_funding_is_enough),
+        "mean": figure(outturn.mean),
+        "level": f"P{outturn.percent:02d}",
+        "total": figure(outturn.level),
+        "interval": [figure(outturn.low), figure(outturn.high)],
+        "series": [
+            {
+                "id": series.id,
+                "name": series.name,
+                "mean_rate": figure(series.rate),
+                "base": figure(series.base),
+            }
+            for series in outturn.series
+        ],
     }
 
 

@@ -20,6 +20,7 @@ from contingency.results import results_of
 from contingency.setting.account import account_of
 from contingency.setting.allocation import allocate, second_opinion
 from contingency.setting.drivers import find_drivers
+from contingency.setting.funding import find_funding
 from contingency.setting.levels import (
     all_percentiles,
     chance_base_is_enough,
@@ -167,6 +168,9 @@ def run_study(
         estimate, threads=threads, progress=progress, runner=runner, model=model
     )
     material = _material(estimate, simulation, exact_moments(model))
+    funding = find_funding(estimate, simulation, material.allocation, threads=threads)
+    if funding is not None:
+        material = replace(material, funding=funding.years, outturn=funding.outturn)
     comparison = None
     previous = previous or previous_of(estimate)
     if previous is not None:

@@ -13,8 +13,8 @@ revision = "A"
 gate = "Gate 3: full funding"
 class = 3
 currency = "EUR"
-price_date = 2026-03-31
-data_date = 2026-03-31
+price_date = {day}
+data_date = {day}
 owner = "A made-up organisation"
 
 [contingency]
@@ -59,6 +59,8 @@ def lay_out(
     systemic: list[Row] | None = None,
     events: list[Row] | None = None,
     causes: list[Row] | None = None,
+    prices: list[Row] | None = None,
+    day: str = "2026-03-31",
     target: int = 80,
     ends: str = "limits",
     general_dependence: float = 0.0,
@@ -69,10 +71,11 @@ def lay_out(
     """Write an estimate folder and return it; rows are dicts of the file's columns.
 
     Rows without a name are named after their id.  The number of trials is fixed, so
-    that a test knows its own sampling error.
+    that a test knows its own sampling error.  `day` is price date and data date.
     """
     folder.mkdir(parents=True, exist_ok=True)
     text = ESTIMATE.format(
+        day=day,
         target=target,
         rounding=rounding,
         ends=ends,
@@ -86,6 +89,7 @@ def lay_out(
         ("systemic", systemic),
         ("events", events),
         ("causes", causes),
+        ("prices", prices),
     ):
         if rows:
             named = [{"id": row["id"], "name": row["id"], **row} for row in rows]

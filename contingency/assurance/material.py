@@ -13,29 +13,10 @@ if TYPE_CHECKING:
     from contingency.assurance.robustness import Robustness
     from contingency.setting.allocation import Allocation, SecondOpinion
     from contingency.setting.drivers import Driver
+    from contingency.setting.funding import Outturn, YearAmounts
     from contingency.setting.levels import FundingLevel
     from contingency.simulation.cross_check import CrossCheck
     from contingency.simulation.result import Simulation
-
-
-@dataclass(frozen=True, kw_only=True, slots=True)
-class YearAmounts:
-    """One financial year of the funding table, money; constant and outturn apart."""
-
-    year: str
-    """As printed: 2026/27 or 2027."""
-    starts: int
-    """Calendar year in which it starts."""
-    base: float
-    """Price-date money."""
-    contingency: float
-    """Price-date money."""
-    event_contingency: float
-    """The part of `contingency` that events draw, price-date money."""
-    escalation: float
-    """Price growth on base and contingency."""
-    total: float
-    """Outturn money: base, contingency and escalation."""
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -101,7 +82,9 @@ class Material:
     correlation_repair: tuple[float, str, str] | None
     cross_check: CrossCheck
     funding: tuple[YearAmounts, ...] = ()
-    """Years of the funding table; empty where none was computed."""
+    """Years of the funding table; empty where no package has a window."""
+    outturn: Outturn | None = None
+    """How sure the funding table is in outturn money; None without the table."""
     change: RevisionChange | None = None
     """The way from the last revision; None where there is none."""
     robustness: Robustness | None = None

@@ -27,7 +27,7 @@ AFTER_WINDOW = Threshold(
     meaning="caution above",
     most=100,
 )
-NO_FUNDING = NotApplicable("No funding by year was computed.")
+NO_FUNDING = NotApplicable("No package has a spending window.")
 
 
 @result_check(
@@ -100,9 +100,11 @@ def money_after_window(material: Material, settings: Settings) -> Verdict:
     if not events or len(windows) < len(events):
         return NotApplicable("Not every open event has a window.")
     last = max(windows)
+    month = material.estimate.financial_year_starts or 1
+    last_starts = last.year if last.month >= month else last.year - 1
     whole = fsum(year.event_contingency for year in material.funding)
     late = fsum(
-        year.event_contingency for year in material.funding if year.starts > last.year
+        year.event_contingency for year in material.funding if year.starts > last_starts
     )
     if whole <= 0 or 100 * late <= settings.number(AFTER_WINDOW) * whole:
         return []

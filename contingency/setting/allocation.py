@@ -178,6 +178,21 @@ def allocate(
     )
 
 
+def event_amounts(simulation: Simulation, allocation: Allocation) -> Array:
+    """Return (e,) what each open event draws from the contingency, in file order.
+
+    By the same rule as the allocation to packages, of which it is another cut:
+    price-date money, unrounded; the amounts sum to the split's events.
+    """
+    variance = float(
+        simulation.range_covariance.sum()
+        + simulation.systemic_covariance.sum()
+        + simulation.event_covariance.sum()
+    )
+    share = simulation.event_covariance / (variance or 1.0)
+    return np.asarray(simulation.event_mean + allocation.margin * share)
+
+
 def second_opinion(
     estimate: Estimate, simulation: Simulation, allocation: Allocation
 ) -> SecondOpinion:

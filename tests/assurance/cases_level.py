@@ -3,8 +3,8 @@
 import dataclasses
 import datetime as dt
 
-from contingency.assurance.material import YearAmounts
 from contingency.estimate.nouns import Level
+from contingency.setting.funding import YearAmounts
 from tests.assurance.builder import (
     EVENTS,
     PACKAGES,
@@ -138,7 +138,8 @@ def years(*, off=0.0, late=0.0):
             base=of_base * base,
             contingency=of_due * due,
             event_contingency=late if year == 2028 else (1e6 - late) / 2,
-            escalation=0.02 * of_base * base,
+            escalation_on_base=0.02 * of_base * base,
+            escalation_on_contingency=0.0,
             total=1.02 * of_base * base + of_due * due + (off if year == 2027 else 0),
         )
         for year, of_base, of_due in amounts
