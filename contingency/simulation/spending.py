@@ -82,9 +82,9 @@ class Calendar:
 
     def begins(self, year: int) -> float:
         """Return the first moment of the financial year that begins in `year`."""
-        # In a year of its own length, so that no date past the calendar is needed.
-        like = 2000 if isleap(year) else 2001
-        return year + begin_of(dt.date(like, self.month, 1)) - like
+        # Not by a date of that year: years past the calendar are asked for too.
+        like = dt.date(2000 if isleap(year) else 2001, self.month, 1)
+        return year + (like.timetuple().tm_yday - 1) / (365 + isleap(year))
 
     def year_of(self, moment: float) -> int:
         """Return the calendar year in which the financial year of a moment begins."""

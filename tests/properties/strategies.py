@@ -1,10 +1,12 @@
 """The only home of strategies, named by our nouns."""
 
+import datetime as dt
+
 from hypothesis import strategies as st
 
 from contingency.errors import NoSuchCurve
 from contingency.estimate.changes import BASE_FAMILIES
-from contingency.estimate.nouns import ContingencyRule, Run
+from contingency.estimate.nouns import ContingencyRule, CostRange, PriceSeries, Run
 from contingency.quantities.shapes import from_range
 from tests.tracking import pairs
 
@@ -218,4 +220,58 @@ def revisions(draw):
             *lines,
             pairs.change(file="estimate", family="prices", factor=1.04, line=99),
         ),
+    )
+
+
+# --------------------------------------------------------------------------------------
+# Money by year
+
+days = st.dates(dt.date(2024, 1, 1), dt.date(2036, 12, 31))
+
+
+@st.composite
+def windows(draw, start, finish):
+    """A window, two dates by the names of their fields; half of one, or none."""
+    first, last = sorted((draw(days), draw(days)))
+    given = draw(st.sampled_from(["both", "both", "both", "start", "finish", "none"]))
+    return {
+        start: first if given in {"both", "start"} else None,
+        finish: last if given in {"both", "finish"} else None,
+    }
+
+
+@st.composite
+def spent_by_year(draw, estimate):
+    """An estimate with windows, profiles, prices and money spent anyhow."""
+    packages = []
+    for package in estimate.packages:
+        changes = draw(windows("start", "finish")) | {
+            "spend": draw(st.sampled_from([None, "even", "early", "late", "bell"])),
+            "prices": draw(st.sampled_from(["", "a", "b"])),
+            "spent": draw(st.sampled_from([None, 0.0, 30.0, 100.0, 140.0])),
+        }
+        packages.append(package.model_copy(update=changes))
+    events = tuple(
+        event.model_copy(update=draw(windows("window_start", "window_finish")))
+        for event in estimate.events
+    )
+    return estimate.model_copy(
+        update={
+            "packages": tuple(packages),
+            "events": events,
+            "financial_year_starts": draw(st.sampled_from([None, 1, 4, 7, 12])),
+            "price_series": tuple(
+                PriceSeries(
+                    id=name,
+                    name=name,
+                    rate=CostRange(
+                        shape="uniform",
+                        low=draw(st.sampled_from([-0.3, -0.02, 0.0, 0.03])),
+                        high=draw(st.sampled_from([0.03, 0.1, 0.4])),
+                    ),
+                    line=2,
+                )
+                for name in ("a", "b")
+            ),
+        }
     )
