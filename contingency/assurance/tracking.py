@@ -14,6 +14,7 @@ from contingency.assurance.declaration import (
 from contingency.assurance.material import Material, RevisionChange
 from contingency.assurance.settings import Settings, Threshold
 from contingency.assurance.wording import counted, listed, money, percent
+from contingency.estimate.earlier import is_earlier
 from contingency.estimate.nouns import Estimate
 from contingency.setting.account import (
     account_of,
@@ -140,6 +141,33 @@ def bridge_does_not_close(material: Material, settings: Settings) -> Verdict:
             message=(
                 f"{money(gap, currency)} of the change since revision"
                 f" {change.previous} is not explained."
+            ),
+        )
+    ]
+
+
+@input_check(
+    slug="previous-not-found",
+    subject="revisions and account",
+    title="Previous revision not found",
+    catches="A change since the last revision that nobody can explain any more.",
+    rule="previous names a folder, and no file of an earlier revision was found there.",
+    severities=("major",),
+    todo="Correct the path or that folder; contingency compare names the faults.",
+    sources=(GAO_UPDATE,),
+)
+def previous_not_found(estimate: Estimate, _settings: Settings) -> Verdict:
+    """Find an estimate whose previous revision does not travel with it."""
+    if not estimate.previous:
+        return NotApplicable("The estimate names no previous revision.")
+    if any(is_earlier(source.name) for source in estimate.sources):
+        return []
+    return [
+        Hit(
+            severity="major",
+            message=(
+                f"previous is {estimate.previous}, and no revision could be read"
+                " there; what changed since is not explained."
             ),
         )
     ]
@@ -477,6 +505,7 @@ def _class_improved(change: RevisionChange) -> bool:
 
 
 CHECKS = (
+    previous_not_found,
     bridge_does_not_close,
     unexplained_base_change,
     price_dates_without_factor,

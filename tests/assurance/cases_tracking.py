@@ -3,11 +3,13 @@
 import datetime as dt
 
 from contingency.assurance.material import RevisionChange
+from contingency.estimate.earlier import pushed_back
 from contingency.estimate.nouns import (
     AccountEntry,
     AccountRule,
     Delegation,
     Milestone,
+    SourceFile,
 )
 from tests.assurance.builder import (
     DAY,
@@ -101,7 +103,23 @@ HIGH = 0.6
 """More of the base than P95 of what remains needs."""
 BASE = 43_000_000.0
 
+TOML = SourceFile(name="estimate.toml", content=b"")
+
 CASES = (
+    fault(
+        "previous-not-found",
+        "folder_is_gone",
+        lambda: sound_estimate(previous="../rev-0"),
+        "major",
+        "previous is ../rev-0, and no revision could be read there",
+    ),
+    twin(
+        "previous-not-found",
+        "its_files_travel_along",
+        lambda: sound_estimate(
+            previous="../rev-0", sources=(*pushed_back((TOML,)), TOML)
+        ),
+    ),
     fault(
         "bridge-does-not-close",
         "gap_of_two_million",
