@@ -535,6 +535,7 @@ def verify_file(
     when: dt.datetime,
     register_file: Path | None = None,
     trusted: Sequence[Path] = (),
+    make_again: bool = True,
     threads: int = 2,
     limits: Limits | None = None,
     say: Say | None = None,
@@ -551,7 +552,7 @@ def verify_file(
         A register.jsonl.
     trusted : sequence of Path
         PEM or DER files of certificates that the reader trusts.
-    threads, limits, say
+    make_again, threads, limits, say
         See `verify_report`.
 
     Raises
@@ -568,6 +569,7 @@ def verify_file(
         when=when,
         register=_bytes_of(register_file) if register_file else None,
         trusted=[_bytes_of(one) for one in trusted],
+        make_again=make_again,
         threads=threads,
         limits=limits,
         say=say,

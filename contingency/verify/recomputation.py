@@ -2,13 +2,17 @@
 
 from __future__ import annotations
 
+import datetime as dt
 import json
 from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
-from contingency.errors import UnreadableReport, UnusableEstimate
+from contingency.errors import ContingencyError, UnreadableReport, UnusableEstimate
 from contingency.record.apart import Answer, Apart
+
+if TYPE_CHECKING:
+    from contingency.study import Study
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -24,10 +28,30 @@ class Recomputed:
     """Trials that the estimate asks for at least."""
     results: dict[str, Any]
     """The results contract."""
+    pdf: bytes
+    """The report made again; empty where it was not asked for or cannot be made."""
+    pdf_fault: str
+    """Why it cannot be made, in words."""
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class Remaking:
+    """What a report carries besides its inputs, and what it is made again from."""
+
+    created: str
+    """Time of the issue, ISO 8601."""
+    results: bytes
+    sign_offs: bytes
+    note: bytes
 
 
 def recompute(
-    apart: Apart, inputs: Mapping[str, bytes], *, threads: int, seconds: float
+    apart: Apart,
+    inputs: Mapping[str, bytes],
+    *,
+    remaking: Remaking | None = None,
+    threads: int,
+    seconds: float,
 ) -> Recomputed:
     """Return what the inputs of a report give, computed in another process.
 
@@ -37,6 +61,9 @@ def recompute(
         Where it is computed.
     inputs : mapping
         Content of each input file by its name; no name is used as a path.
+    remaking : Remaking, optional
+        Has the report itself made again, with the program's own templates, if the
+        results come out as they are in it.
     threads : int
         Blocks simulated at the same time; changes no figure.
     seconds : float
@@ -49,13 +76,18 @@ def recompute(
     TookTooLong
         took-too-long.
     """
-    answer, (results,) = apart.call(
+    more = [remaking.results, remaking.sign_offs, remaking.note] if remaking else []
+    answer, (results, pdf) = apart.call(
         "contingency.verify.recomputation:recompute_apart",
-        {"names": list(inputs), "threads": threads},
-        list(inputs.values()),
+        {
+            "names": list(inputs),
+            "threads": threads,
+            "created": remaking.created if remaking else "",
+        },
+        [*inputs.values(), *more],
         seconds=seconds,
     )
-    return Recomputed(**answer, results=json.loads(results))
+    return Recomputed(**answer, results=json.loads(results), pdf=pdf)
 
 
 def recompute_apart(arguments: dict[str, Any], blobs: list[bytes]) -> Answer:
@@ -64,7 +96,8 @@ def recompute_apart(arguments: dict[str, Any], blobs: list[bytes]) -> Answer:
     from contingency.results import as_json
     from contingency.study import run_study
 
-    files = dict(zip(arguments["names"], blobs, strict=True))
+    files = dict(zip(arguments["names"], blobs, strict=False))
+    more = blobs[len(files) :]
     try:
         estimate = read_held_estimate(files, where="the files inside the report")
         study = run_study(estimate, threads=arguments["threads"])
@@ -76,9 +109,32 @@ def recompute_apart(arguments: dict[str, Any], blobs: list[bytes]) -> Answer:
             rule="A report holds a sound estimate.",
             remedy="Ask for the file again from where it was issued.",
         ) from None
+    results = as_json(study.results())
+    pdf, fault_words = b"", ""
+    if more and more[0] == results:
+        pdf, fault_words = _made_again(study, more, arguments["created"])
     return {
         "fingerprint": estimate.fingerprint,
         "currency": estimate.currency,
         "step": estimate.contingency.rounding,
         "least": estimate.run.least,
-    }, [as_json(study.results())]
+        "pdf_fault": fault_words,
+    }, [results, pdf]
+
+
+def _made_again(study: Study, more: list[bytes], created: str) -> tuple[bytes, str]:
+    """Return the report made again, or why it cannot be."""
+    from contingency.issued import issued_pdf
+
+    results, sign_offs, note = more
+    try:
+        return issued_pdf(
+            study,
+            results=results,
+            sign_offs=sign_offs,
+            note=note,
+            created=dt.datetime.fromisoformat(created),
+            templates=None,
+        ), ""
+    except ContingencyError as fault:
+        return b"", fault.found

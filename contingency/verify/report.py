@@ -28,10 +28,11 @@ from contingency.record.sign_off_file import SignOffs, parse_sign_offs
 from contingency.verify import wording
 from contingency.verify.comparison import Comparison, compare_results
 from contingency.verify.printed import PrintedCheck, check_printed, figures_to_print
-from contingency.verify.recomputation import Recomputed, recompute
+from contingency.verify.recomputation import Recomputed, Remaking, recompute
 from contingency.verify.verification import (
     Line,
     RegisterCheck,
+    RemadeCheck,
     TypedCheck,
     Verification,
 )
@@ -50,6 +51,20 @@ class Limits:
     compute_seconds: float = 3600.0
     megabytes: int = 8192
     """Addresses that the other process may reserve; what it uses is far less."""
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class _Asked:
+    """What the reader wants to know, and by what it is judged."""
+
+    when: dt.datetime
+    register: bytes | None
+    roots: tuple[bytes, ...]
+    """DER of the trusted certificates."""
+    make_again: bool
+    threads: int
+    limits: Limits
+    say: Callable[[str], None]
 
 
 class _Parts:
@@ -92,6 +107,7 @@ def verify_report(
     when: dt.datetime,
     register: bytes | None = None,
     trusted: Sequence[bytes] = (),
+    make_again: bool = True,
     threads: int = 2,
     limits: Limits | None = None,
     say: Callable[[str], None] | None = None,
@@ -109,6 +125,8 @@ def verify_report(
         A register.jsonl; without it that part is not checked.
     trusted : sequence of bytes
         PEM or DER files of certificates that the reader trusts.
+    make_again : bool
+        Whether the pages are made again too, which takes as long as a report.
     threads : int
         Blocks simulated at the same time; changes no figure.
     limits : Limits, optional
@@ -127,42 +145,43 @@ def verify_report(
     UnfitCertificate
         unfit-certificate.  A file of trusted certificates cannot be read.
     """
-    limits = limits or Limits()
-    roots = [der for content in trusted for der in _der(content)]
+    asked = _Asked(
+        when=when,
+        register=register,
+        roots=tuple(der for content in trusted for der in _der(content)),
+        make_again=make_again,
+        threads=threads,
+        limits=limits or Limits(),
+        say=say or (lambda _step: None),
+    )
     if apart is not None:
-        return _verified(pdf, apart, when, register, roots, threads, limits, say)
-    with Apart(megabytes=limits.megabytes) as own:
-        return _verified(pdf, own, when, register, roots, threads, limits, say)
+        return _verified(pdf, apart, asked)
+    with Apart(megabytes=asked.limits.megabytes) as own:
+        return _verified(pdf, own, asked)
 
 
-def _verified(
-    pdf: bytes,
-    apart: Apart,
-    when: dt.datetime,
-    register: bytes | None,
-    roots: Sequence[bytes],
-    threads: int,
-    limits: Limits,
-    say: Callable[[str], None] | None,
-) -> Verification:
-    say = say or (lambda _step: None)
+def _verified(pdf: bytes, apart: Apart, asked: _Asked) -> Verification:
+    say, limits = asked.say, asked.limits
     say("Taking the files out")
     parts = _Parts(pdf, _taken_out(pdf, apart, limits))
     manifest = check_manifest(parts.attachments)
     parts.lines.append(wording.files_line(manifest))
     note = read_note(parts.files.get(NOTE, b""))
     typed_signs = _typed_inside(parts)
-    in_register = _register_check(parts, note, register)
+    in_register = _register_check(parts, note, asked.register)
     say("Looking at the seals")
     entry = in_register.entry if in_register else None
-    seals = _seals(parts, apart, when, roots, entry, limits, typed_signs)
+    seals = _seals(parts, apart, asked, entry, typed_signs)
     typed = _typed_check(parts, typed_signs)
     parts.lines.append(wording.typed_line(typed))
     parts.lines.append(wording.register_line(in_register))
     say("Computing the figures again")
-    computed, comparison = _computed_again(parts, apart, threads, limits)
+    computed, comparison = _computed_again(
+        parts, apart, note if asked.make_again else None, asked
+    )
     say("Reading the answer page")
     printed = _printed(parts, apart, computed, limits)
+    remade = _remade(parts, computed, comparison)
     say("")
     return Verification(
         project=parts.stated("project"),
@@ -175,6 +194,7 @@ def _verified(
         register=in_register,
         recomputed=comparison,
         printed=printed,
+        remade=remade,
         lines=tuple(parts.lines),
     )
 
@@ -203,24 +223,22 @@ def _taken_out(pdf: bytes, apart: Apart, limits: Limits) -> list[Attachment]:
 def _seals(
     parts: _Parts,
     apart: Apart,
-    when: dt.datetime,
-    roots: Sequence[bytes],
+    asked: _Asked,
     entry: Entry | None,
-    limits: Limits,
     typed: SignOffs,
 ) -> SealsCheck | None:
     arguments = {
-        "when": when.isoformat(),
+        "when": asked.when.isoformat(),
         "issued_bytes": entry.pdf_bytes if entry else None,
         "second_word": True,
     }
     try:
         try:
-            check = _seals_apart(parts, apart, roots, arguments, limits)
+            check = _seals_apart(parts, apart, asked, arguments)
         except RecordError:
             # pyHanko's second look may take too long; ours alone does not.
             arguments["second_word"] = False
-            check = _seals_apart(parts, apart, roots, arguments, limits)
+            check = _seals_apart(parts, apart, asked, arguments)
     except RecordError as fault:
         parts.lines.append(Line(what="seals", outcome="fails", words=fault.found))
         return None
@@ -229,17 +247,13 @@ def _seals(
 
 
 def _seals_apart(
-    parts: _Parts,
-    apart: Apart,
-    roots: Sequence[bytes],
-    arguments: dict[str, Any],
-    limits: Limits,
+    parts: _Parts, apart: Apart, asked: _Asked, arguments: dict[str, Any]
 ) -> SealsCheck:
     answer, _ = apart.call(
         "contingency.record.seal_check:seals_apart",
         arguments,
-        [parts.pdf, *roots],
-        seconds=limits.seal_seconds,
+        [parts.pdf, *asked.roots],
+        seconds=asked.limits.seal_seconds,
     )
     return seals_from(answer)
 
@@ -318,12 +332,16 @@ def _later_issue(register: Register, entry: Entry | None) -> Entry | None:
 
 
 def _computed_again(
-    parts: _Parts, apart: Apart, threads: int, limits: Limits
+    parts: _Parts, apart: Apart, note: IssueNote | None, asked: _Asked
 ) -> tuple[Recomputed | None, Comparison | None]:
     what = "computed again"
     try:
         computed = recompute(
-            apart, parts.inputs, threads=threads, seconds=limits.compute_seconds
+            apart,
+            parts.inputs,
+            remaking=_remaking(parts, note),
+            threads=asked.threads,
+            seconds=asked.limits.compute_seconds,
         )
     except RecordError as fault:
         parts.lines.append(Line(what=what, outcome="fails", words=fault.found))
@@ -338,6 +356,31 @@ def _computed_again(
         return computed, None
     parts.lines.append(wording.recomputed_line(comparison))
     return computed, comparison
+
+
+def _remaking(parts: _Parts, note: IssueNote | None) -> Remaking | None:
+    if note is None or not {RESULTS, SIGN_OFFS} <= set(parts.files):
+        return None
+    return Remaking(
+        created=note.issued_at,
+        results=parts.files[RESULTS],
+        sign_offs=parts.files[SIGN_OFFS],
+        note=parts.files[NOTE],
+    )
+
+
+def _remade(
+    parts: _Parts, computed: Recomputed | None, comparison: Comparison | None
+) -> RemadeCheck | None:
+    check = None
+    if computed and comparison and (computed.pdf or computed.pdf_fault):
+        check = RemadeCheck(
+            # A sealed copy begins with the report as issued.
+            same_bytes=bool(computed.pdf) and parts.pdf.startswith(computed.pdf),
+            fault=computed.pdf_fault,
+        )
+    parts.lines.append(wording.remade_line(check))
+    return check
 
 
 def _printed(

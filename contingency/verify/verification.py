@@ -49,6 +49,16 @@ class TypedCheck:
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
+class RemadeCheck:
+    """The report made again from what travels in it."""
+
+    same_bytes: bool
+    """Whether the report as issued came out, byte for byte."""
+    fault: str
+    """Why it could not be made, in words; empty if it was."""
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
 class Verification:
     """Everything that was found out about one report."""
 
@@ -69,6 +79,8 @@ class Verification:
     """None where it could not be computed."""
     printed: PrintedCheck | None
     """None where the pages could not be compared."""
+    remade: RemadeCheck | None
+    """None where it was not made again: a draft, another version, other results."""
     lines: tuple[Line, ...]
     """All of it as a reader sees it."""
 

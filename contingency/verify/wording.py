@@ -9,7 +9,12 @@ from contingency.record.sign_off_file import SignOffs
 from contingency.record.signature_check import Seal
 from contingency.verify.comparison import Comparison
 from contingency.verify.printed import PrintedCheck
-from contingency.verify.verification import Line, RegisterCheck, TypedCheck
+from contingency.verify.verification import (
+    Line,
+    RegisterCheck,
+    RemadeCheck,
+    TypedCheck,
+)
 
 
 def files_line(check: ManifestCheck) -> Line:
@@ -148,6 +153,27 @@ def printed_line(check: PrintedCheck) -> Line:
     missing = ", ".join(f"{one.figure} ({one.words})" for one in check.missing[:5])
     words = f"Page {check.page} does not show: {missing}."
     return Line(what=what, outcome="fails", words=words)
+
+
+def remade_line(check: RemadeCheck | None) -> Line:
+    """Return the line about the report made again, pages and all."""
+    what = "made again"
+    if check is None:
+        words = "Not asked for, or no issued report whose results came out the same."
+        return Line(what=what, outcome="not checked", words=words)
+    if check.fault:
+        words = f"It could not be made here: {check.fault}"
+        return Line(what=what, outcome="not checked", words=words)
+    if check.same_bytes:
+        words = "Made again from the files inside: the same bytes, every page of it."
+        return Line(what=what, outcome="holds", words=words)
+    return Line(
+        what=what,
+        outcome="not checked",
+        words="Made again from the files inside, its bytes differ: pages of an own "
+        "templates folder, another version of a library, or a change before the first "
+        "seal.  Compare the pages by eye.",
+    )
 
 
 def _listed(faults: tuple[str, ...]) -> str:

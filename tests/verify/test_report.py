@@ -11,7 +11,8 @@ from contingency.errors import RecordError
 from contingency.record.apart import Apart
 from contingency.record.attachments import LARGEST_PDF, read_attachments
 from contingency.record.manifest import manifest_of
-from contingency.verify.report import Limits, verify_report
+from contingency.verify import report as verifying
+from contingency.verify.report import Limits
 from tests.office_project import LATER, SIGNERS, project
 from tests.record.sample import small_report
 from tests.verify.malformed import MALFORMED
@@ -27,6 +28,13 @@ def apart():
 @pytest.fixture(scope="module")
 def register():
     return (project().records / "register.jsonl").read_bytes()
+
+
+def verify_report(pdf, **more):
+    """Without making the pages again, unless a test is about that."""
+    return verifying.verify_report(
+        pdf, make_again=more.pop("make_again", False), **more
+    )
 
 
 def outcomes(found):
@@ -45,6 +53,7 @@ def whole(register):
         when=LATER,
         register=register,
         trusted=[project().root.pem],
+        make_again=True,
     )
 
 
@@ -64,6 +73,7 @@ def test_each_truth_is_there_by_itself(whole):
     assert whole.register.entry.number == whole.note.number == 1
     assert whole.recomputed.outcome == "exactly"
     assert (whole.printed.page, whole.printed.missing) == (2, ())
+    assert whole.remade.same_bytes
 
 
 def test_it_is_plain_values_for_json(whole):
@@ -160,6 +170,20 @@ def test_forged_results_are_noticed(apart):
     assert outcomes(found)["answer page"] == "fails"
     assert "bound to other results" in words(found, "typed sign-offs")
     assert found.bottom_line.startswith("This report does not hold: ")
+
+
+def test_a_changed_page_is_told_even_without_a_seal(apart):
+    """Every file inside is untouched, and the page says something else."""
+    with pikepdf.open(io.BytesIO(project().sealed[0])) as document:
+        page = document.pages[2].obj
+        page.Contents = document.make_stream(b"0 0 1 rg 0 0 300 300 re f")
+        out = io.BytesIO()
+        document.save(out)
+    found = verify_report(out.getvalue(), when=LATER, apart=apart, make_again=True)
+
+    assert outcomes(found)["files"] == outcomes(found)["computed again"] == "holds"
+    assert not found.remade.same_bytes
+    assert "Compare the pages by eye" in words(found, "made again")
 
 
 @pytest.mark.parametrize("results", [b"", b"[]", b"null", b"{}", b"[" * 99_999])
