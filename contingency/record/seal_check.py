@@ -117,6 +117,8 @@ def _checked(
     found = sorted(_found(last, pdf), key=lambda one: one.end)
     faults = [*_file_faults(pdf, last, found)]
     ends = [one.end for one in found]
+    if not found and issued_bytes not in {None, len(pdf)}:
+        faults.append("bytes follow the report as it was issued")
     base = issued_bytes or _first_end(pdf, found)
     states = _states(pdf, [base, *ends], last, faults)
     later = _later_faults(states, found, faults)
@@ -280,7 +282,7 @@ def _states(
             states.append(None)
             faults.append("it cannot be read as it stood under an earlier seal")
     if states[0] is not None and not states[0].is_first:
-        faults.append("it was changed between its issue and its first seal")
+        faults.append("it was changed after its issue, before any seal")
     return states
 
 

@@ -464,11 +464,20 @@ def test_a_change_between_issue_and_first_seal_is_noticed(report, people, change
         certificate=people.certificates["prepared"],
         when=WHEN,
     )
-    assert (
-        "it was changed between its issue and its first seal" in check(changed).faults
-    )
+    assert "it was changed after its issue, before any seal" in check(changed).faults
     told = check(changed, issued_bytes=len(report)).faults
     assert any("when its first seal was added" in fault for fault in told)
+
+
+@pytest.mark.parametrize("change", CHANGES, ids=lambda change: change.__name__)
+def test_a_change_of_a_report_without_seals_is_noticed(report, change):
+    """Whether or not the register says how long it was."""
+    changed = revised(report, change)
+
+    assert not check(changed).are_intact
+    assert not check(changed, issued_bytes=len(report)).are_intact
+    assert not check(report + b"%%EOF\n", issued_bytes=len(report)).are_intact
+    assert check(report, issued_bytes=len(report)).are_intact
 
 
 def test_an_object_that_was_referred_to_in_advance_is_noticed(report, people):
