@@ -28,10 +28,25 @@ class Place:
     name: str
     ratio: float
     """Amount over base."""
+    span: tuple[float, float]
+    """Percent between which its chance lies; twice the same where it is known."""
     ratio_words: str
     words: str
     """The chance that it is enough, by the outside view."""
     is_target: bool
+
+    @property
+    def is_on_the_curve(self) -> bool:
+        """Whether the amount lies between the ends of what is known."""
+        low, high = self.span
+        return low == high or (low > 0 and high < 100)
+
+    def height(self, ratios: tuple[float, ...], percents: tuple[float, ...]) -> float:
+        """Return the percent at which the amount is drawn on a curve."""
+        low, high = self.span
+        if low == high or not self.is_on_the_curve:
+            return (low + high) / 2
+        return float(np.interp(self.ratio, ratios, percents))
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -47,6 +62,11 @@ class OutsideCurve:
     are_points_given: bool
     """Whether the points themselves were published, and deserve a dot each."""
 
+    @property
+    def percents(self) -> tuple[float, ...]:
+        """Percents of the points."""
+        return tuple(float(percent) for percent, _ in self.points)
+
 
 def outside_chart(
     curve: OutsideCurve, places: tuple[Place, ...], axis_title: str, look: Look
@@ -54,7 +74,8 @@ def outside_chart(
     """Draw the outside curve with this project's amounts on it.
 
     Labels stand in a column at the right, where there is always room.  Under the axis
-    each closed project is one stroke.
+    each closed project is one stroke.  Where a table only tells between which chances
+    an amount lies, a bar spans them.
     """
     top, bottom, left, right = 22.0, 182.0, 30.0, 292.0
     strip = bottom + 40.0
@@ -73,18 +94,22 @@ def outside_chart(
     heights = [up(percent) for percent, _ in curve.points]
     points = list(zip([across(ratio) for ratio in ratios], heights, strict=True))
     spots = [
-        (across(p.ratio), float(np.interp(p.ratio, ratios, heights))) for p in places
+        (across(p.ratio), up(p.height(tuple(ratios), curve.percents))) for p in places
     ]
     wanted = spread([y for _, y in spots], GAP, top + 2, bottom - 14)
     for place, spot, y in zip(places, spots, wanted, strict=True):
+        low, high = (up(percent) for percent in place.span)
+        if low > high:
+            canvas.bar(spot[0] - 1.5, high, spot[0] + 1.5, low, colours.pale)
         _place(canvas, place, spot, y, bottom)
     canvas.path(points, colours.ink, width=1.3)
     if curve.are_points_given:
         for point in points:
             canvas.dot(point, colours.ink, radius=1.7)
     for place, spot in zip(places, spots, strict=True):
-        colour = colours.accent if place.is_target else colours.ink
-        canvas.dot(spot, colour, radius=2.4)
+        if place.is_on_the_curve:
+            colour = colours.accent if place.is_target else colours.ink
+            canvas.dot(spot, colour, radius=2.4)
     if curve.given:
         _strokes(canvas, curve, across, strip)
     return canvas.drawing()

@@ -90,7 +90,11 @@ def _scale(
     """Return a scale that leaves room for the words at the far end of every stem."""
     figure = max((look.letters.width(one.words, SMALL) for one in lines), default=0.0)
     reach = _reach(tuple(one.effect for one in lines))
-    ends = [issued + min(max(one.effect, -reach), reach) for one in lines]
+    ends = [
+        issued + min(max(end, -reach), reach)
+        for one in lines
+        for end in (one.effect - one.half_width, one.effect + one.half_width)
+    ]
     return scale_over(
         (issued, *seeds, *ends),
         NAMES + figure + 8,
@@ -109,6 +113,12 @@ def _reach(effects: tuple[float, ...]) -> float:
     if longest[1] > 0 and longest[0] > DWARFS * longest[1]:
         return CUT_AT * longest[1]
     return longest[0]
+
+
+def has_cut(lines: tuple[ChangeLine, ...]) -> bool:
+    """Whether one of the changes is so large that its stem is cut."""
+    effects = tuple(one.effect for one in lines)
+    return any(abs(effect) > _reach(effects) for effect in effects)
 
 
 def _head(canvas: Canvas, middle: float, issued: str, seeds: str) -> None:
@@ -136,14 +146,14 @@ def _row(
     canvas.line((start, middle), (end, middle), colours.accent, width=1.1)
     if is_cut:
         _cut(canvas, (start + end) / 2, middle)
-    elif change.half_width > 0:
-        low = across(amount - change.half_width)
-        high = across(amount + change.half_width)
+    half = 0.0 if is_cut else change.half_width
+    low, high = across(amount - half), across(amount + half)
+    if half > 0:
         canvas.bar(low, middle - 1.5, high, middle + 1.5, colours.pale)
     canvas.dot((end, middle), colours.accent, radius=2.3)
     rises = end >= start
     canvas.text(
-        (end + 5 if rises else end - 5, y + 7.4),
+        (max(high, end + 2) + 3 if rises else min(low, end - 2) - 3, y + 7.4),
         change.words,
         size=SMALL,
         colour=colours.muted,

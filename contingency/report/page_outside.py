@@ -207,7 +207,7 @@ def _outside_words(one: OutsidePosition, view: OutsideView) -> str:
     if view.kind == "history":
         return chance(one.low_percent / 100)
     if one.low_percent == 0:
-        return f"fewer than {fixed(one.high_percent)}{SPACE}%"
+        return f"below {fixed(one.high_percent)}{SPACE}%"
     if one.high_percent == 100:
         return f"{fixed(one.low_percent)}{SPACE}% or more"
     return f"{fixed(one.low_percent)}{SPACE}% to {fixed(one.high_percent)}{SPACE}%"
@@ -287,6 +287,7 @@ def _chart(study: Study, view: OutsideView, look: Look) -> Chart:
         Place(
             name=_named(one, study),
             ratio=one.ratio,
+            span=(one.low_percent, one.high_percent),
             ratio_words=percent(one.ratio),
             words=f"{_outside_words(one, view)} by the outside view",
             is_target=one.name == study.target.name,

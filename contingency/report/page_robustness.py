@@ -6,7 +6,12 @@ from dataclasses import dataclass
 
 from contingency.assurance.break_points import BreakPoint
 from contingency.assurance.robustness import Robustness, SeedTest, WhatIf
-from contingency.report.chart_what_if import ChangeLine, seeds_chart, what_if_chart
+from contingency.report.chart_what_if import (
+    ChangeLine,
+    has_cut,
+    seeds_chart,
+    what_if_chart,
+)
 from contingency.report.charts import Chart
 from contingency.report.look import Look
 from contingency.report.page_results import Picture, picture
@@ -94,10 +99,14 @@ class RobustnessPage:
     levels: tuple[ChangeRow, ...]
     unasked: tuple[UnaskedRow, ...]
     what_if: Picture
+    has_cut: bool
+    """Whether the picture cuts the line of a change that dwarfs the others."""
     seeds: Picture
     seeds_words: str
     """Where the issued number falls among the fresh seeds, in a sentence."""
     broken_level: str
+    asked_words: str
+    """What the request is, and when it counts as broken."""
     breaks: tuple[BreakRow, ...]
 
 
@@ -130,9 +139,13 @@ def robustness_page(
             if one.contingency is None
         ),
         what_if=picture(what_if),
+        has_cut=has_cut(
+            tuple(_line(one, printed, amounts) for one in rested.asked),
+        ),
         seeds=picture(seeds),
         seeds_words=_seeds_words(rested.seeds, study, amounts),
         broken_level=level(rested.break_percent),
+        asked_words=_asked_words(study, rested, amounts),
         breaks=tuple(_break_row(point) for point in rested.break_points),
     )
     return page, [what_if, seeds]
@@ -186,6 +199,22 @@ def _seeds_words(seeds: SeedTest, study: Study, amounts: Amounts) -> str:
 
 def _fresh(seeds: SeedTest) -> str:
     return plural(len(seeds.seeds), "fresh seed")
+
+
+def _asked_words(study: Study, rested: Robustness, amounts: Amounts) -> str:
+    """Say what the request is, and when it counts as broken."""
+    own, lower = study.target.name, level(rested.break_percent)
+    asked = study.estimate.requested_total
+    if asked is not None:
+        return (
+            f"The total asked for is {amounts.full(asked)}, which is not simply {own}; "
+            f"it counts as broken once it is a {lower} only."
+        )
+    return (
+        f"The request is {own} itself, so that the least adverse move takes it below "
+        f"that level by a hair; it counts as broken ten points lower, as a {lower}, "
+        "which is this tool's choice."
+    )
 
 
 def _break_row(point: BreakPoint) -> BreakRow:

@@ -140,17 +140,29 @@ CURVES = {
     "ratios", [(1.0, 1.099, 1.178), (1.0, 1.0, 1.0), (1.0, 0.4, 3.0), (1.0, 1.35, 1.36)]
 )
 @pytest.mark.parametrize("given", [(), (0.96, 1.02, 1.02, 1.1, 1.3)])
-def test_places_on_the_outside_curve_never_meet(curve, ratios, given, look):
+@pytest.mark.parametrize(
+    "spans",
+    [
+        ((12, 12), (48, 48), (78, 78)),
+        ((0, 20), (50, 80), (90, 100)),
+        ((99.9, 99.9),) * 3,
+    ],
+    ids=str,
+)
+def test_places_on_the_outside_curve_never_meet(curve, ratios, given, spans, look):
     """However near they lie, and beyond the ends of a table too."""
     places = tuple(
         Place(
             name=name,
             ratio=ratio,
+            span=span,
             ratio_words=f"{100 * ratio:.0f} %",
-            words="fewer than 50 % by the outside view",
+            words="50 % to 80 % by the outside view",
             is_target=name.startswith("Request"),
         )
-        for name, ratio in zip(("Base", "P50", "Request (P80)"), ratios, strict=True)
+        for name, ratio, span in zip(
+            ("Base", "P50", "Request (P80)"), ratios, spans, strict=True
+        )
     )
     drawing = outside_chart(
         OutsideCurve(
@@ -164,4 +176,65 @@ def test_places_on_the_outside_curve_never_meet(curve, ratios, given, look):
         look,
     )
 
+    hold(drawing)
+
+
+def test_what_a_table_leaves_open_is_drawn_as_a_bar(look):
+    """Between two percentiles a dot lies in it; beyond the ends there is no dot."""
+
+    def draw(*spans):
+        places = tuple(
+            Place(
+                name=f"Amount {i}",
+                ratio=1.0 + 0.1 * i,
+                span=span,
+                ratio_words="",
+                words="",
+                is_target=False,
+            )
+            for i, span in enumerate(spans)
+        )
+        curve = OutsideCurve(
+            points=((50, 1.05), (80, 1.15)),
+            given=(),
+            given_words="",
+            are_points_given=False,
+        )
+        svg = outside_chart(curve, places, "Final cost", look).svg.decode()
+        return svg.count("<rect"), svg.count("<circle")
+
+    assert draw((0, 50), (50, 80), (80, 100)) == (3, 1)
+    assert draw((12, 12), (48, 48), (78, 78)) == (0, 3)
+
+
+def test_words_stand_beyond_the_noise(look):
+    """The bar of the noise does not run under the figure at its end."""
+    lines = tuple(
+        ChangeLine(name="A", effect=effect, half_width=9e5, words="5.0")
+        for effect in (5e6, -5e6)
+    )
+    drawing = what_if_chart(
+        lines,
+        (),
+        issued=40e6,
+        issued_words="Issued",
+        seeds=(39e6, 41e6),
+        seeds_words="Seeds",
+        unit=chart_unit(40e6, 1e5),
+        axis_title="Contingency",
+        look=look,
+    )
+    bars = [
+        (float(x), float(x) + float(width))
+        for x, width in re.findall(
+            rf'<rect x="([\d.]+)" y="[\d.]+" width="([\d.]+)" height="[\d.]+" '
+            rf'fill="{look.colours.pale}"',
+            drawing.svg.decode(),
+        )
+    ]
+    right, left = (label for label in drawing.labels if label.words == "5.0")
+
+    assert len(bars) == 2
+    assert right.left > bars[0][1]
+    assert left.right < bars[1][0]
     hold(drawing)

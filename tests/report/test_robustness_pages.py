@@ -327,7 +327,7 @@ def test_a_published_table_gives_places_between_its_percentiles(beside, look):
     page, _ = outside(dataclasses.replace(beside, estimate=estimate), look)
     view = page.comparison
 
-    assert view.positions[0].outside == "fewer than 20\xa0%"
+    assert view.positions[0].outside == "below 20\xa0%"
     assert [row.name for row in view.levels] == ["P25", "P50", "P75", "P80", "P90"]
     assert view.projects == ()
     assert view.back_test == ""
