@@ -38,6 +38,7 @@ from contingency.report.page_front import (
     answer_page,
     title_page,
 )
+from contingency.report.page_funding import FundingPage, funding_page
 from contingency.report.page_inputs import InputsPage, inputs_page
 from contingency.report.page_outside import OutsidePage, outside_page
 from contingency.report.page_results import (
@@ -87,6 +88,7 @@ class Report:
     result: ResultPage
     split: SplitPage
     allocation: AllocationPage
+    funding: FundingPage | None
     drivers: DriversPage
     coverage: CoveragePage
     robustness: RobustnessPage | None
@@ -141,6 +143,7 @@ def make_pages(
     picture, note = allocation_picture(
         study, printed, groups_of(study.allocation), look
     )
+    funding, funding_charts = funding_page(study, printed, amounts, look)
     robustness, robustness_charts = robustness_page(study, printed, amounts, look)
     outside, outside_charts = outside_page(study, printed, amounts, look)
     charts: dict[str, Chart] = {
@@ -150,6 +153,7 @@ def make_pages(
             composition(printed, amounts, look),
             picture,
             *driver_charts(study, printed, amounts, look),
+            *funding_charts,
             *robustness_charts,
             *outside_charts,
         )
@@ -179,6 +183,7 @@ def make_pages(
         result=result_page(study, printed, amounts, charts),
         split=split_page(study, printed, amounts),
         allocation=allocation_page(study, printed, amounts, picture, note),
+        funding=funding,
         drivers=drivers_page(study, amounts, charts),
         coverage=coverage_page(
             study,
