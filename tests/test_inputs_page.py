@@ -17,6 +17,7 @@ from contingency.estimate.reading import LAYOUTS, read_estimate
 from contingency.estimate.settings import (
     KEYS,
     LEAST_BY_DEFAULT,
+    LEAST_TRIALS,
     MOST_BY_DEFAULT,
     MOST_TRIALS,
     REQUIRED,
@@ -150,6 +151,7 @@ def test_limits_and_defaults_are_those_of_the_code():
     assert f"at most {LARGEST_READ // 2**20} MB" in PAGE
     assert f"at most {LARGEST_EVIDENCE // 2**20} MB" in PAGE
     assert f"{LEAST_BY_DEFAULT:,} and {MOST_BY_DEFAULT:,}" in PAGE
+    assert f"at least {LEAST_TRIALS:,}" in PAGE
     assert f"at most {MOST_TRIALS:,}" in PAGE
     assert f"| {TOLERANCE_BY_DEFAULT} |" in PAGE
 

@@ -56,9 +56,10 @@ from contingency.estimate.toml_lines import KeyLines
 
 BLOCK = 4_096
 """Trials of one block: a constant of the method."""
-MOST_TRIALS = 2**24
-"""Trials of one run at most, 4,096 blocks.  A choice of ours: the totals alone then
-take 128 MB, and no interval of a percentile is of use that narrow."""
+LEAST_TRIALS, MOST_TRIALS = 2 * BLOCK, 2**24
+"""Trials of one run.  Two blocks at least, for an interval compares blocks; 4,096 at
+most, a choice of ours: the totals alone then take 128 MB, and no interval of a
+percentile is of use that narrow."""
 LEAST_BY_DEFAULT, MOST_BY_DEFAULT = 65_536, 1_048_576
 TOLERANCE_BY_DEFAULT = 0.001
 """What holds where [simulation] does not say it.  Choices of ours, named in
@@ -324,7 +325,7 @@ def _run(section: Section) -> Run:
 
 def _blocks(section: Section, key: str) -> int | None:
     """Return a number of trials that is a whole number of blocks."""
-    trials = section.whole_within(key, 1, MOST_TRIALS)
+    trials = section.whole_within(key, LEAST_TRIALS, MOST_TRIALS)
     if trials is None or trials % BLOCK == 0:
         return trials
     below = trials // BLOCK * BLOCK

@@ -139,10 +139,10 @@ def everything_in(folder: Path) -> dict[str, int]:
         (event("E2", probability="30"), "Write 30% or 0.3, if that is meant."),
         (event("E1", frequency="150%"), "Write 1.5."),
         (setting("least = 8192", "least = 10_000"), "Write 8192, the nearest"),
-        (setting("least = 8192", "least = 1"), "Write 4096, the nearest"),
+        (setting("least = 8192", "least = 4096"), "Write a least within"),
         (
-            setting("least = 8192", "least = 6145"),
-            "Write 8192, the nearest multiple of 4,096.",
+            setting("least = 8192", "least = 15_000"),
+            "Write 16384, the nearest multiple of 4,096.",
         ),
         (setting('target = "P80"', "target = 80"), "Write P80, in quotes."),
         (setting('"EUR"', '"eur"'), "Write EUR."),
