@@ -20,7 +20,9 @@ from contingency.report.folder import (
 from contingency.report.look import read_look
 from contingency.report.pages import make_pages
 from contingency.report.pdf import write_report
+from contingency.study import run_study
 from tests.report.conftest import CREATED
+from tests.report.funded_refit import funded
 
 ROOT = Path(__file__).parents[2]
 
@@ -218,7 +220,7 @@ def test_an_own_folder_makes_an_own_report(folder, refit, results):
     )
 
 
-def test_the_document_names_every_file_and_every_picture(refit, look, results):
+def test_the_document_names_every_file_and_every_picture(look, results):
     """`docs/own-templates.md` is what an organisation works from."""
     document = (ROOT / "docs" / "own-templates.md").read_text(encoding="utf-8")
     named = set(re.findall(r"^\| `([\w./-]+)` \|", document, re.MULTILINE))
@@ -228,7 +230,8 @@ def test_the_document_names_every_file_and_every_picture(refit, look, results):
     }
     pictures = set(re.findall(r"`chart:([\w-]+)`", document))
     files = {"results.json": ("Results", results)}
-    pages = make_pages(refit, look, created=CREATED, draft=True, files=files)
+    study = run_study(funded())
+    pages = make_pages(study, look, created=CREATED, draft=True, files=files)
 
     assert named == there
     assert pictures == set(pages.pictures) | set(draft_marks(look))
