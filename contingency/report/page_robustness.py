@@ -19,6 +19,7 @@ from contingency.report.wording import (
     NOTHING,
     SPACE,
     Amounts,
+    MoneyUnit,
     capital,
     chart_unit,
     clipped,
@@ -99,6 +100,8 @@ class RobustnessPage:
     levels: tuple[ChangeRow, ...]
     unasked: tuple[UnaskedRow, ...]
     what_if: Picture
+    picture_unit: str
+    """Unit of the picture; tables count finer."""
     has_cut: bool
     """Whether the picture cuts the line of a change that dwarfs the others."""
     seeds: Picture
@@ -120,6 +123,7 @@ def robustness_page(
     rested = study.robustness
     if rested is None:
         return None, []
+    unit = _chart_unit(rested, amounts)
     what_if, seeds = _charts(study, rested, printed, amounts, look)
 
     def row(one: WhatIf) -> ChangeRow:
@@ -139,8 +143,9 @@ def robustness_page(
             if one.contingency is None
         ),
         what_if=picture(what_if),
+        picture_unit=unit.caption(amounts.currency),
         has_cut=has_cut(
-            tuple(_line(one, printed, amounts) for one in rested.asked),
+            tuple(_line(one, printed, amounts, unit) for one in rested.asked)
         ),
         seeds=picture(seeds),
         seeds_words=_seeds_words(rested.seeds, study, amounts),
@@ -264,12 +269,10 @@ def _charts(
     look: Look,
 ) -> tuple[Chart, Chart]:
     """Return the picture of the changes and that of the fresh seeds."""
-    unit = chart_unit(
-        max(abs(one.contingency or 0.0) for one in rested.what_ifs), amounts.step
-    )
+    unit = _chart_unit(rested, amounts)
     issued = printed.total.contingency
     seeds = rested.seeds
-    lines = {one.slug: _line(one, printed, amounts) for one in rested.asked}
+    lines = {one.slug: _line(one, printed, amounts, unit) for one in rested.asked}
     caption = unit.caption(amounts.currency)
     axis_title = f"Contingency at {study.target.name}, {caption}"
     issued_words = f"Issued {in_unit(issued, unit)}"
@@ -281,7 +284,7 @@ def _charts(
             alt=f"Change of the contingency at {study.target.name} with one assumption "
             "changed at a time, largest first: "
             + listed(f"{one.name} {one.words}" for one in largest)
-            + f", in {amounts.caption}.",
+            + f", in {caption}.",
             drawing=what_if_chart(
                 tuple(lines[w.slug] for w in rested.asked if w.is_judgement),
                 tuple(lines[w.slug] for w in rested.asked if not w.is_judgement),
@@ -311,11 +314,20 @@ def _charts(
     )
 
 
-def _line(one: WhatIf, printed: PrintedFigures, amounts: Amounts) -> ChangeLine:
-    row = _change_row(one, printed, amounts)
+def _chart_unit(rested: Robustness, amounts: Amounts) -> MoneyUnit:
+    largest = max(abs(one.contingency or 0.0) for one in rested.what_ifs)
+    return chart_unit(largest, amounts.step)
+
+
+def _line(
+    one: WhatIf, printed: PrintedFigures, amounts: Amounts, unit: MoneyUnit
+) -> ChangeLine:
+    _, difference = printed_change(
+        one.contingency or 0.0, issued=printed.total.contingency, step=amounts.step
+    )
     return ChangeLine(
-        name=row.words,
+        name=capital(clipped(one.title, LONGEST)),
         effect=one.effect,
         half_width=one.half_width if one.half_width > 0 else 0.0,
-        words=row.difference,
+        words=signed(difference / unit.size, unit.digits),
     )

@@ -19,6 +19,7 @@ from contingency.setting.printed import printed_change, printed_figures
 from contingency.study import run_study
 from tests.report.closed_refits import HISTORY, RATED, TABLE, beside_others
 from tests.report.conftest import CREATED
+from tests.report.ship_refit import FINDINGS, ship_refit
 from tests.report.test_pages import bare
 from tests.report.test_pdf import plain
 from tests.test_examples import LARGE, SMALL
@@ -360,3 +361,73 @@ def test_the_answer_of_an_example_is_one_page(folder):
     assert pages[2].startswith("DRAFT Contents")
     for words in ("How firm the number is", "Break points", "What backs the spread"):
         assert any(words in page for page in pages[3:]), words
+
+
+def times(cost, factor):
+    """A range with all of its amounts times a factor."""
+    if cost is None:
+        return None
+    ends = {name: getattr(cost, name) for name in ("low", "likely", "high")}
+    return cost.model_copy(
+        update={name: factor * end for name, end in ends.items() if end is not None}
+    )
+
+
+def wide_and_wordy():
+    """The refit in amounts of thirteen figures, to the unit, with long words."""
+    words = "A name that goes on & on, with ÄÖÜ ß ñ ç Ω and <b>tags</b> "
+    refit = ship_refit()
+    rule, factor = refit.contingency, 1e5
+    level = rule.levels[0].model_copy(update={"purpose": words, "holder": words})
+    return refit.model_copy(
+        update={
+            "contingency": rule.model_copy(
+                update={
+                    "rounding": 1.0,
+                    "set_by": words * 9,
+                    "reason": words * 9,
+                    "levels": tuple(
+                        level.model_copy(update={"percent": percent})
+                        for percent in (10, 30, 50, 60, 70, 80, 90)
+                    ),
+                }
+            ),
+            "packages": tuple(
+                p.model_copy(
+                    update={
+                        "name": words * 3,
+                        "base": factor * p.base,
+                        "cost": times(p.cost, factor),
+                    }
+                )
+                for p in refit.packages
+            ),
+            "events": tuple(
+                e.model_copy(
+                    update={
+                        "impact": times(e.impact, factor),
+                        "after_impact": times(e.after_impact, factor),
+                    }
+                )
+                for e in refit.events
+            ),
+        }
+    )
+
+
+@pytest.mark.slow
+def test_the_answer_stays_on_one_page_with_long_words_and_long_amounts():
+    """Also with three findings that are cut, and everything else at its longest."""
+    study = run_study(wide_and_wordy())
+    stops = tuple(
+        dataclasses.replace(FINDINGS[2], message=f"Reason {i} is long " * 20)
+        for i in range(3)
+    )
+    study = dataclasses.replace(study, findings=stops)
+    pdf = write_report(study, created=CREATED, results=as_json(study.results()))
+    pages = [plain(page.extract_text()) for page in PdfReader(io.BytesIO(pdf)).pages]
+
+    assert "Assumptions that matter most." in pages[1]
+    assert "Evidence. " in pages[1]
+    assert pages[1].count("Stop. Reason") == 3
+    assert pages[2].startswith("DRAFT Contents")
