@@ -10,7 +10,7 @@ import pikepdf
 import pytest
 from pypdf import PdfReader
 
-from contingency import read_estimate
+from contingency import issued, read_estimate
 from contingency.errors import (
     AlreadyIssued,
     BrokenSeal,
@@ -218,29 +218,35 @@ def test_an_issued_report_waits_for_a_seal_of_each_role():
         assert all(field.FT == "/Sig" and "/V" not in field for field in fields)
 
 
-def test_a_correction_is_a_new_issue_with_a_reason(copy):
-    """The first issue stays as it is, and is the same bytes as that of the project."""
-    first = issue_estimate(copy, when=WHEN)
-    assert (copy.parent / first.folder / first.report).read_bytes() == (
+def test_the_same_issue_makes_the_same_bytes(copy):
+    """Same inputs, version and time in another folder: the PDF is the same file."""
+    entry = issue_estimate(copy, when=WHEN)
+
+    assert (copy.parent / entry.folder / entry.report).read_bytes() == (
         project().sealed[0]
     )
+
+
+def test_a_correction_is_a_new_issue_with_a_reason(copy, monkeypatch):
+    """The first issue stays as it is; the second knows its place in the register."""
+    notes = []
+
+    def quick_report(*_, extra_attachments, **__):
+        (note,) = [f.content for f in extra_attachments if f.name == "issue.json"]
+        notes.append(read_note(note))
+        return b"%PDF-1.7 " + note
+
+    monkeypatch.setattr(issued, "write_report", quick_report)
+    first = issue_estimate(copy, when=WHEN)
     with pytest.raises(AlreadyIssued):
         issue_estimate(copy, when=LATER)
     second = issue_estimate(copy, reason="Wrong logo.", when=LATER)
-    records = copy.parent
 
     assert [first.folder, second.folder] == ["issued/A", "issued/A-2"]
     assert (second.issue, second.reason) == (2, "Wrong logo.")
-    assert files_at_fault(records, first) == ()
-    note = read_note(
-        {
-            file.name: file.content
-            for file in read_attachments(
-                (records / second.folder / second.report).read_bytes()
-            )
-        }["issue.json"]
-    )
-    assert (note.number, note.previous) == (2, second.previous)
+    assert files_at_fault(copy.parent, first) == ()
+    assert (notes[1].number, notes[1].previous) == (2, second.previous)
+    assert (notes[1].issue, notes[1].reason) == (2, "Wrong logo.")
 
 
 # --- Seal ---------------------------------------------------------------------------
@@ -259,21 +265,21 @@ def seal(path, role="prepared", **more):
 
 
 @pytest.fixture
-def issued(tmp_path):
+def report(tmp_path):
     """A copy of the issued report."""
     path = tmp_path / "report.pdf"
     path.write_bytes(project().sealed[0])
     return path
 
 
-def test_a_seal_goes_into_a_copy(issued):
+def test_a_seal_goes_into_a_copy(report):
     """The issued file stays; the copy grows with each seal."""
-    first = seal(issued)
+    first = seal(report)
     second = seal(first.path, "checked")
 
-    assert issued.read_bytes() == project().sealed[0]
-    assert first.path == second.path == issued.with_name("report-sealed.pdf")
-    assert second.path.read_bytes().startswith(issued.read_bytes())
+    assert report.read_bytes() == project().sealed[0]
+    assert first.path == second.path == report.with_name("report-sealed.pdf")
+    assert second.path.read_bytes().startswith(report.read_bytes())
     assert (first.signer, first.level, first.names_agree) == (
         "Anna Example",
         "B-B",
@@ -282,20 +288,20 @@ def test_a_seal_goes_into_a_copy(issued):
     assert second.open_roles == ("approved",)
 
 
-def test_a_seal_by_somebody_else_is_told(issued):
+def test_a_seal_by_somebody_else_is_told(report):
     """The certificate need not bear the name of the typed sign-off; it is said."""
     other = pki.holder("Eve Other", issuer=project().root)
-    done = seal(issued, certificate=other.pkcs12)
+    done = seal(report, certificate=other.pkcs12)
 
     assert (done.typed_name, done.names_agree) == ("Anna Example", False)
 
 
-def test_nothing_is_overwritten_by_a_seal(issued, tmp_path):
+def test_nothing_is_overwritten_by_a_seal(report, tmp_path):
     """Only an earlier stage of the same copy."""
     other = tmp_path / "other.pdf"
     other.write_bytes(b"mine")
     with pytest.raises(UnusablePath):
-        seal(issued, out=other)
+        seal(report, out=other)
 
     assert other.read_bytes() == b"mine"
 
@@ -316,12 +322,12 @@ def test_a_draft_gets_no_seal(tmp_path):
         seal(path)
 
 
-def test_a_wrong_password_seals_nothing(issued):
+def test_a_wrong_password_seals_nothing(report):
     """And leaves no file."""
     with pytest.raises(WrongPassword):
-        seal(issued, password=b"wrong")
+        seal(report, password=b"wrong")
 
-    assert [path.name for path in issued.parent.iterdir()] == ["report.pdf"]
+    assert [path.name for path in report.parent.iterdir()] == ["report.pdf"]
 
 
 def test_a_file_that_is_not_there_is_an_error_of_ours(tmp_path):
