@@ -53,6 +53,12 @@ from contingency.report.page_results import (
     result_page,
     split_page,
 )
+from contingency.report.page_revisions import (
+    AccountPage,
+    RevisionsPage,
+    account_page,
+    revisions_page,
+)
 from contingency.report.page_robustness import RobustnessPage, robustness_page
 from contingency.report.page_scope import (
     BasePage,
@@ -93,6 +99,8 @@ class Report:
     coverage: CoveragePage
     robustness: RobustnessPage | None
     outside: OutsidePage
+    revisions: RevisionsPage
+    account: AccountPage | None
     cross_checks: CrossCheckPage
     assurance: AssurancePage
     cautions: CautionsPage
@@ -146,6 +154,8 @@ def make_pages(
     funding, funding_charts = funding_page(study, printed, amounts, look)
     robustness, robustness_charts = robustness_page(study, printed, amounts, look)
     outside, outside_charts = outside_page(study, printed, amounts, look)
+    revisions, revisions_charts = revisions_page(study, amounts, look)
+    account, account_charts = account_page(study, amounts, look)
     charts: dict[str, Chart] = {
         chart.name: chart
         for chart in (
@@ -156,6 +166,8 @@ def make_pages(
             *funding_charts,
             *robustness_charts,
             *outside_charts,
+            *revisions_charts,
+            *account_charts,
         )
     }
     moment = created.astimezone(dt.UTC)
@@ -200,6 +212,8 @@ def make_pages(
         ),
         robustness=robustness,
         outside=outside,
+        revisions=revisions,
+        account=account,
         # Small differences are the point here: whole units, not the report's steps.
         cross_checks=cross_check_page(
             study, Amounts(currency=estimate.currency, step=min(step, 1.0))

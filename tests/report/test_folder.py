@@ -23,6 +23,7 @@ from contingency.report.pdf import write_report
 from contingency.study import run_study
 from tests.report.conftest import CREATED
 from tests.report.funded_refit import funded
+from tests.report.second_revision import second_revision
 
 ROOT = Path(__file__).parents[2]
 
@@ -230,8 +231,10 @@ def test_the_document_names_every_file_and_every_picture(look, results):
     }
     pictures = set(re.findall(r"`chart:([\w-]+)`", document))
     files = {"results.json": ("Results", results)}
-    study = run_study(funded())
-    pages = make_pages(study, look, created=CREATED, draft=True, files=files)
+    drawn = set(draft_marks(look))
+    for study in (run_study(funded()), second_revision()):
+        pages = make_pages(study, look, created=CREATED, draft=True, files=files)
+        drawn |= set(pages.pictures)
 
     assert named == there
-    assert pictures == set(pages.pictures) | set(draft_marks(look))
+    assert pictures == drawn

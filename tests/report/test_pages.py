@@ -21,6 +21,7 @@ from contingency.results import as_json
 from contingency.study import run_study
 from tests.report.closed_refits import beside_others
 from tests.report.conftest import CREATED
+from tests.report.second_revision import second_revision
 from tests.report.funded_refit import funded
 from tests.report.ship_refit import ship_refit, with_fixed_findings
 
@@ -101,13 +102,14 @@ def correlated():
 
 @pytest.fixture(scope="module")
 def studies(refit):
-    """Five studies that between them fill every part of every page."""
+    """Studies that between them fill every part of every page."""
     return [
         with_fixed_findings(refit),
         run_study(bare()),
         run_study(correlated()),
         run_study(beside_others()),
         run_study(funded()),
+        second_revision(),
     ]
 
 
