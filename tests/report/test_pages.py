@@ -21,8 +21,8 @@ from contingency.results import as_json
 from contingency.study import run_study
 from tests.report.closed_refits import beside_others
 from tests.report.conftest import CREATED
-from tests.report.second_revision import second_revision
 from tests.report.funded_refit import funded
+from tests.report.second_revision import second_revision
 from tests.report.ship_refit import ship_refit, with_fixed_findings
 
 FOLDER = templates_folder()
