@@ -5,8 +5,8 @@ from pathlib import Path
 
 import pytest
 
-from contingency.estimate.nouns import ShapeName
 from contingency.estimate.earlier import is_earlier
+from contingency.estimate.nouns import ShapeName
 from contingency.estimate.reading import read_estimate
 from contingency.study import run_study
 
@@ -215,6 +215,7 @@ def test_files_of_evidence_travel_with_the_estimate(large):
         "cable-quotes.csv",
         "closed-links.csv",
         "history.csv",
+        "prices.csv",
         "south-landfall-boreholes.csv",
     }
 
@@ -375,6 +376,28 @@ def test_outcomes_are_those_of_an_estimate_of_its_class(folder, studies):
     assert least - 0.5 <= 100 * (p90 / p50 - 1) <= most
     assert 0.05 <= study.chance_base_is_enough <= 0.25
     assert 0.2 <= study.implied_average_correlation <= 0.4
+
+
+def test_the_larger_example_shows_money_by_year(studies):
+    """Windows for all, five price series, two packages that follow none."""
+    study = studies["island-power-link/rev-c"]
+    packages = study.estimate.packages
+
+    assert all(p.start and p.finish for p in packages)
+    assert {p.prices for p in packages} == {
+        *(series.id for series in study.estimate.price_series),
+        "",
+    }
+    assert len(study.estimate.price_series) == 5
+    assert all(s.evidence.is_complete for s in study.estimate.price_series)
+    assert [p.id for p in packages if not p.prices] == ["P630", "P640"]
+    assert [year.year for year in study.funding] == ["2025", "2026", "2027", "2028"]
+    assert sum(y.base for y in study.funding) == pytest.approx(study.estimate.base)
+    assert sum(y.contingency for y in study.funding) == pytest.approx(
+        study.target.contingency
+    )
+    # Certain mean rates fall a little short of uncertain ones.
+    assert 0.75 < study.outturn.chance_funding_is_enough < 0.80
 
 
 def test_the_contingency_of_a_class_3_request_is_between_12_and_20_percent(studies):
