@@ -103,6 +103,20 @@ def test_an_output_that_cannot_be_written_is_status_two(tmp_path, capsys):
     assert blocked.read_text(encoding="utf-8") == "mine"
 
 
+def test_a_report_that_cannot_be_set_is_status_two(small, tmp_path, capsys):
+    """A letter that no font has; its neighbourhood is shown without markup."""
+    file = small / "packages.csv"
+    text = file.read_text(encoding="utf-8").replace("Hull steel", "\u5e95 steel")
+    file.write_text(text, encoding="utf-8")
+    out = tmp_path / "out"
+
+    assert main(["report", str(small), "--quiet", "--out", str(out)]) == WRONG
+    told = capsys.readouterr().err
+    assert "U+5E95" in told
+    assert "<" not in told.splitlines()[0]
+    assert not out.exists()
+
+
 @pytest.mark.parametrize(
     "call",
     [

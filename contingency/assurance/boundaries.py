@@ -119,8 +119,8 @@ def contract_share_missing(estimate: Estimate, settings: Settings) -> Verdict:
     silent = [event.id for event in events if event.contract is None]
     if silent:
         message = (
-            f"{counted(len(silent), 'open event')} of {len(events)} do not say who"
-            f" carries the cost under the contract: {listed(silent)}."
+            f"Of {len(events)} open events {counted(len(silent), 'does', 'do')} not say"
+            f" who carries the cost under the contract: {listed(silent)}."
         )
         hits.append(Hit(severity="major", rows=tuple(silent), message=message))
     hits += [
@@ -178,8 +178,8 @@ def scope_as_risk(estimate: Estimate, _settings: Settings) -> Verdict:
     silent = [event.id for event in events if event.in_scope is None]
     if silent:
         message = (
-            f"{counted(len(silent), 'open event')} of {len(events)} do not say whether"
-            f" they lie inside the approved scope: {listed(silent)}."
+            f"Of {len(events)} open events {counted(len(silent), 'does', 'do')} not say"
+            f" whether the approved scope covers the cause: {listed(silent)}."
         )
         hits.append(Hit(severity="caution", rows=tuple(silent), message=message))
     return hits

@@ -13,7 +13,12 @@ from collections.abc import Sequence
 
 from contingency.cli.console import ATTENTION, DONE, STOPPED, WRONG, complain
 from contingency.cli.parser import make_parser
-from contingency.errors import ContingencyError, InputError, UnusableEstimate
+from contingency.errors import (
+    ContingencyError,
+    InputError,
+    ReportError,
+    UnusableEstimate,
+)
 from contingency.version import VERSION
 
 __all__ = ["ATTENTION", "DONE", "WRONG", "main", "make_parser"]
@@ -29,7 +34,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
         status: int = options.run(options)
     except ContingencyError as error:
         complain(_laid_out(error))
-        return WRONG if isinstance(error, InputError) else ATTENTION
+        return WRONG if isinstance(error, (InputError, ReportError)) else ATTENTION
     except BrokenPipeError:
         # The reader of our output has gone, as `head` does; there is nobody to tell.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())

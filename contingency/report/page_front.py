@@ -7,6 +7,7 @@ from dataclasses import dataclass, replace
 
 from contingency.assurance.events import rare_large_events
 from contingency.assurance.findings import Finding
+from contingency.assurance.trials import unsettled_percentile
 from contingency.estimate.nouns import SignOffLine
 from contingency.report.charts import KINDS, Chart
 from contingency.report.wording import (
@@ -32,9 +33,9 @@ REQUIRED_ROLES = ("prepared", "checked", "approved")
 
 LONGEST_CAUTION = 200
 """Characters of a caution on the answer page; longer ones are cut there only."""
-STATED = 4
+STATED = 5
 """Weight of a caution that the authors state."""
-LIGHTEST = 5
+LIGHTEST = 6
 """Weight of a finding that has been answered; notes are no cautions."""
 
 MOST_LEVELS = 6
@@ -329,17 +330,20 @@ def _worst_cautions(study: Study) -> tuple[AnswerCaution, ...]:
 def _weight(finding: Finding) -> int:
     """Return the place of a finding among the cautions; smaller weighs more.
 
-    What stands in the way comes first, then what the money does not cover, then what
+    What stands in the way comes first, a level that is not known before all that is
+    only doubted, then what the money does not cover, then what
     the checks and the authors warn of, then what has been answered.
     """
     if finding.severity == "stop":
         return 0
-    if finding.needs_attention:
+    if finding.check == unsettled_percentile.slug and not finding.is_answered:
         return 1
-    if finding.check == rare_large_events.slug:
+    if finding.needs_attention:
         return 2
-    if finding.severity == "caution" and not finding.is_answered:
+    if finding.check == rare_large_events.slug:
         return 3
+    if finding.severity == "caution" and not finding.is_answered:
+        return 4
     return LIGHTEST if finding.severity in ("major", "caution") else LIGHTEST + 1
 
 

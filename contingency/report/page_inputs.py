@@ -244,7 +244,7 @@ def _package_notes(package: WorkPackage, amounts: Amounts) -> list[str]:
         notes.append(f"Follows: {loads}.")
     if package.start and package.finish:
         profile = f", {package.spend}" if package.spend else ""
-        notes.append(f"Spent {_window(package.start, package.finish)}{profile}.")
+        notes.append(f"To be spent {_window(package.start, package.finish)}{profile}.")
     return notes
 
 

@@ -109,7 +109,8 @@ def scope_page(estimate: Estimate) -> ScopePage:
         f"{plural(len(estimate.open_events), 'open risk event')}"
     )
     if closed:
-        coverage += f"; {plural(closed, 'event')} closed or occurred are listed only"
+        rest = plural(closed, "event is", "events are")
+        coverage += f"; {rest} closed or occurred, and only listed"
     return ScopePage(
         scope=said.scope.strip() or "No scope is stated.",
         coverage=f"{coverage}.",
@@ -151,7 +152,10 @@ def base_page(study: Study, printed: PrintedFigures, amounts: Amounts) -> BasePa
     if yes:
         parts.append(f"{listed(yes)} {'holds' if len(yes) == 1 else 'hold'} one")
     if silent:
-        parts.append(f"{plural(silent, 'package does', 'packages do')} not say")
+        parts.append(
+            f"{plural(silent, 'package does', 'packages do')} not say whether the "
+            "value holds an allowance for risk"
+        )
     members = [row.group or row.name for row in study.allocation.rows]
     lines = [
         BaseRow(

@@ -185,5 +185,6 @@ def _refuse_characters_without_font(
 def _around(character: str, text: str) -> str:
     """Return a few words around the first place of a character."""
     at = text.index(character)
-    words = " ".join(text[max(0, at - 30) : at + 30].split())
+    before = text[:at].rpartition(">")[2][-30:]
+    words = " ".join((before + text[at:].partition("<")[0][:30]).split())
     return f"report, near {words!r}"

@@ -541,7 +541,7 @@ CASES = (
         "begun and left",
         lambda: contracts(contract=None),
         "major",
-        "1 open event of 5 do not say who",
+        "Of 5 open events 1 does not say who",
         rows=("R1",),
     ),
     fault(
@@ -549,7 +549,7 @@ CASES = (
         "a mature class",
         lambda: sound_estimate(estimate_class=2),
         "major",
-        "5 open events of 5",
+        "Of 5 open events 5 do not",
         rows=("R1", "R2", "R3", "R4", "R5"),
     ),
     fault(
@@ -586,7 +586,7 @@ CASES = (
         "not said",
         lambda: scopes(first=None),
         "caution",
-        "1 open event of 5 do not say",
+        "Of 5 open events 1 does not say whether",
         rows=("R1",),
     ),
     twin("scope-as-risk", "inside", lambda: scopes(first=True)),

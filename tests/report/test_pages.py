@@ -321,6 +321,20 @@ def test_the_worst_cautions_come_first(refit, look):
     assert stated == ["Stated", "Stated"]
 
 
+def test_a_level_that_is_not_known_comes_before_doubts_about_it(refit, look):
+    """Among the open majors, whichever stands first in the list of checks."""
+    known = with_fixed_findings(refit)
+    major = next(one for one in known.findings if one.needs_attention)
+    major = dataclasses.replace(major, severity="major", message="A doubt.")
+    unsettled = dataclasses.replace(
+        major, check="unsettled-percentile", message="P80 is not settled."
+    )
+    study = dataclasses.replace(refit, findings=(major, unsettled))
+    words = [one.words for one in pages_of(study, look).report.answer.cautions]
+
+    assert words[:2] == ["P80 is not settled.", "A doubt."]
+
+
 def test_no_machine_path_reaches_the_context(refit, look):
     """The report is the same wherever it is made."""
     report = json.dumps(dataclasses.asdict(pages_of(refit, look).report))
