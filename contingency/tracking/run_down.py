@@ -25,7 +25,8 @@ PROFILES: dict[str, Callable[[float], float]] = {
     "late": lambda u: u * u,
     "bell": lambda u: u * u * (3.0 - 2.0 * u),
 }
-"""Share of the cost that is spent when the share u of the window has passed."""
+"""Share of the cost that is spent when the share u of the window has passed: the
+integrals of the densities in `contingency.simulation.spending`."""
 
 
 def carried_forward(estimate: Estimate, day: dt.date) -> Estimate:

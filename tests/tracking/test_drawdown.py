@@ -16,6 +16,7 @@ from contingency.estimate.nouns import (
     ShapeName,
 )
 from contingency.simulation.engine import simulate
+from contingency.simulation.spending import PROFILES as DENSITIES
 from contingency.simulation.totals import simulate_totals
 from contingency.tracking.drawdown import drawdown
 from contingency.tracking.run_down import (
@@ -271,3 +272,13 @@ def test_the_forecast_begins_with_today_and_ends_with_nothing_left():
     assert needs == sorted(needs, reverse=True)
     # Ranges are gone; the systemic risk acts on the base to the end.
     assert 0.0 < needs[-1] < 0.6 * found.need
+
+
+@pytest.mark.parametrize("profile", PROFILES)
+def test_the_run_down_spends_as_the_money_by_year_does(profile):
+    """The share spent is the integral of the density that phases the money."""
+    nodes, weights = np.polynomial.legendre.leggauss(8)
+    for u in (0.2, 0.5, 0.9):
+        places = u * (1.0 + nodes) / 2.0
+        spent = float(np.sum(u / 2.0 * weights * DENSITIES[profile](places)))
+        assert PROFILES[profile](u) == pytest.approx(spent, abs=1e-12)
