@@ -158,8 +158,17 @@ def _other_lists(embedded: dict[str, Any], computed: dict[str, Any]) -> Iterator
         yield f"its results are for {_shown(embedded['target']['level'])}"
     if [*embedded["percentiles"]] != [*computed["percentiles"]]:
         yield "its results list other percentiles"
+    same_version = embedded["tool"] == computed["tool"]
+    if (embedded["funding"] or same_version) and _years(embedded) != _years(computed):
+        # A version from before the table of years has none.
+        yield "its results list other years"
     if embedded["cross_check"]["passed"] is not computed["cross_check"]["passed"]:
         yield "its cross-checks ended otherwise"
+
+
+def _years(results: dict[str, Any]) -> list[Any]:
+    """Return the years of the funding table; none where there is no table."""
+    return [row["year"] for row in results["funding"] or ()]
 
 
 def _found(results: dict[str, Any]) -> set[tuple[str, str, str, str]]:
@@ -208,6 +217,10 @@ def _differences(
         embedded["allocation"], computed["allocation"], strict=True
     ):
         yield from _row(theirs, mine, error, computed["target"], at_target)
+    if embedded["funding"]:
+        for theirs, mine in zip(embedded["funding"], computed["funding"], strict=True):
+            yield from _year(theirs, mine, whole)
+        yield from _outturn(embedded, computed, error, whole)
 
 
 def _level(
@@ -258,6 +271,48 @@ def _row(
         mine["variance_share"],
         error.of_share(share),
     )
+
+
+def _year(
+    theirs: dict[str, Any], mine: dict[str, Any], whole: float
+) -> Iterator[Difference]:
+    """Give one year: the base is certain, the contingency is a part of the whole."""
+    exact = SAME * abs(mine["total"])
+    # What grows on a part of the contingency errs as the part does.
+    growth = abs(mine["total"] / (mine["base"] + mine["contingency"] or 1.0))
+    grown = whole * max(growth, 1.0)
+    for key, allowed in (
+        ("base", exact),
+        ("contingency", whole),
+        ("escalation_on_base", exact),
+        ("escalation_on_contingency", grown),
+        ("total", grown),
+    ):
+        name = f"funding.{mine['year']}.{key}"
+        yield _difference(name, theirs[key], mine[key], allowed)
+
+
+def _outturn(
+    embedded: dict[str, Any],
+    computed: dict[str, Any],
+    error: _Sampling,
+    whole: float,
+) -> Iterator[Difference]:
+    """Give the simulated outturn cost; its level errs as its own interval says.
+
+    The mean errs less than a level in the tail.  The chance errs twice: by its own
+    trials, and by the amount that it is the chance of.
+    """
+    theirs, mine = embedded["outturn"], computed["outturn"]
+    growth = abs(mine["funding"] / (computed["target"]["total"] or 1.0))
+    chance = mine["chance_funding_is_enough"]
+    for key, allowed in (
+        ("funding", whole * max(growth, 1.0)),
+        ("mean", _allowed_at_level(mine)),
+        ("total", _allowed_at_level(mine)),
+        ("chance_funding_is_enough", 2.0 * error.of_chance(chance)),
+    ):
+        yield _difference(f"outturn.{key}", theirs[key], mine[key], allowed)
 
 
 def _difference(

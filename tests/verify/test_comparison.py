@@ -18,7 +18,15 @@ def results_of(folder, *, seed=1, high=1300):
             lay_out(
                 folder,
                 packages=[
-                    {"id": "P1", "base": 1000, "low": 900, "high": high},
+                    {
+                        "id": "P1",
+                        "base": 1000,
+                        "low": 900,
+                        "high": high,
+                        "start": "2026-07-01",
+                        "finish": "2029-06-30",
+                        "prices": "steel",
+                    },
                     {"id": "P2", "base": 500, "low": 400, "high": 700},
                 ],
                 systemic=[
@@ -42,6 +50,7 @@ def results_of(folder, *, seed=1, high=1300):
                         "high": 500,
                     },
                 ],
+                prices=[{"id": "steel", "low": "-3%", "likely": "2%", "high": "9%"}],
                 seed=seed,
                 trials=LEAST,
             )
@@ -118,6 +127,11 @@ FORGED = [
     ("split", lambda r: r["split"].update(events=r["split"]["ranges"] * 2)),
     ("row", lambda r: r["allocation"][0].update(ranges=0.0)),
     ("share", lambda r: r["allocation"][1].update(variance_share=0.9)),
+    ("year", lambda r: r["funding"][0].update(base=r["funding"][1]["base"])),
+    ("phasing", lambda r: r["funding"][0].update(contingency=999.0)),
+    ("escalation", lambda r: r["funding"][1].update(escalation_on_base=0.0)),
+    ("outturn", lambda r: r["outturn"].update(total=r["target"]["total"])),
+    ("enough", lambda r: r["outturn"].update(chance_funding_is_enough=0.9)),
     ("infinite", lambda r: r.update(mean=1e300)),
 ]
 
@@ -142,6 +156,8 @@ CONTRADICTED = [
     ("levels", lambda r: r["levels"].pop()),
     ("percentiles", lambda r: r["percentiles"].pop("P07")),
     ("target", lambda r: r["target"].update(level="P50")),
+    ("years", lambda r: r["funding"].pop()),
+    ("no years", lambda r: r.update(funding=None)),
     ("cross-check", lambda r: r["cross_check"].update(passed=False)),
     ("findings", lambda r: r["findings"].pop()),
 ]
