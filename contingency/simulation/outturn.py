@@ -15,6 +15,7 @@ from numpy.typing import NDArray
 from threadpoolctl import threadpool_limits
 
 from contingency.estimate.nouns import Estimate
+from contingency.quantities.curves import Curves
 from contingency.quantities.draws import BLOCK, Source, scores, strata
 from contingency.simulation.blocks import DrawnBlock, Workspace, draw_block
 from contingency.simulation.cost_model import CostModel, build_model
@@ -75,8 +76,10 @@ class _OutturnRun:
         self._plan = plan
         self._model = model
         self._mix = price_mix(estimate)
-        self._used = series_in_use(estimate)
-        self._rates = {s.id: s.rate.distribution for s in estimate.price_series}
+        shapes = {s.id: s.rate.distribution for s in estimate.price_series}
+        used = series_in_use(estimate)
+        self._rates = Curves([shapes[name] for name in used])
+        self._used = [used[i] for i in self._rates.order]
 
     def total(self, drawn: DrawnBlock, block: int, source: Source) -> Array:
         """Return the (n,) outturn totals of one block, money."""
@@ -89,10 +92,9 @@ class _OutturnRun:
     def _drawn_rates(self, block: int, source: Source) -> dict[str, Array]:
         """Return the yearly rates of each series in use, (n,) fractions."""
         score = scores(strata(source, [f"prices/{s}" for s in self._used], block))
-        return {
-            name: np.asarray(self._rates[name].at_score(score[row]))
-            for row, name in enumerate(self._used)
-        }
+        rates = np.empty_like(score)
+        self._rates.read(score, 0, rates)
+        return dict(zip(self._used, rates, strict=True))
 
     def _escalating(self, drawn: DrawnBlock) -> dict[_Course, Array]:
         """Return the (n,) price-date money that follows each course and series."""
