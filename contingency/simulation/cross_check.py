@@ -209,7 +209,10 @@ def _level(second: Array, blocks: Array, percent: int, count: int) -> LevelCheck
     simulated = percentile(np.sort(blocks, axis=None), percent)
     tail = JOINT_ERROR / (2 * count)
     at_or_below = (blocks <= simulated).mean(axis=1)
-    own = norm.isf(tail) * float(at_or_below.std(ddof=1) / np.sqrt(blocks.shape[0]))
+    own = norm.isf(tail) * float(np.sqrt(p * (1 - p) / (blocks.size - len(blocks))))
+    if len(blocks) > 1:
+        between = float(at_or_below.std(ddof=1) / np.sqrt(len(blocks)))
+        own = min(own, float(t.isf(tail, len(blocks) - 1)) * between)
     below = p - binom.ppf(tail, m, p) / m
     above = binom.isf(tail, m, p) / m - p
     low = int(np.floor(m * (p - np.hypot(below, own)))) - 1
