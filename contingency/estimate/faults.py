@@ -468,11 +468,11 @@ class UpliftTooLow(Fault):
     law = "An uplift is at least -100%."
 
 
-class RateTooLow(Fault):
-    """A yearly price rate that leaves no price."""
+class RateOutOfRange(Fault):
+    """A yearly price rate that leaves no price, or multiplies it beyond reason."""
 
-    slug = "rate-too-low"
-    law = "A price rate stays above -100 % a year, however low it is drawn."
+    slug = "rate-out-of-range"
+    law = "A price rate stays above -100 % and at most 1,000 % a year in every draw."
 
 
 class ProbabilityOutOfRange(Fault):
@@ -566,6 +566,13 @@ class DatesReversed(Fault):
 
     slug = "dates-reversed"
     law = "A window finishes on or after the day it starts."
+
+
+class WindowTooFar(Fault):
+    """A window in another century than any project."""
+
+    slug = "window-too-far"
+    law = "A window lies between the years 1900 and 2200, both included."
 
 
 class HappensMismatch(Fault):

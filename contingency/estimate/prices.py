@@ -9,9 +9,9 @@ from contingency.estimate.cells import HUNDRED, Figure
 from contingency.estimate.evidence import COLUMNS as EVIDENCE
 from contingency.estimate.evidence import read_evidence
 from contingency.estimate.fault_list import Problem, shown
-from contingency.estimate.faults import PercentMissing, RateTooLow
+from contingency.estimate.faults import PercentMissing, RateOutOfRange
 from contingency.estimate.folder import EstimateFolder
-from contingency.estimate.nouns import CostRange, PriceSeries
+from contingency.estimate.nouns import CostRange, PriceSeries, ShapeName
 from contingency.estimate.ranges import LISTED, EndsRule, read_range
 from contingency.estimate.rows import Row
 from contingency.estimate.tables import Layout, Table
@@ -33,8 +33,11 @@ LAYOUT = Layout(
     required=("id", "name"),
 )
 
-LOWEST_SCORE = -8.3
-"""Normal score below which no trial is ever drawn: ndtri(2**-54) is -8.29."""
+FURTHEST_SCORE = 8.3
+"""Normal score beyond which no trial is ever drawn: ndtri(2**-54) is -8.29."""
+HIGHEST_RATE = 10.0
+"""Yearly rate that is still read, a fraction.  A choice of ours: prices that grow by
+more have no money of a price date, and powers of it leave what a float can hold."""
 _REMEDY = "Write the change of prices in one year, in percent, above -100%."
 
 
@@ -55,7 +58,8 @@ class RateTerms:
             remedy = f"Write {figure.value.normalize():f}% if percent are meant."
             return Problem(PercentMissing, found, remedy, rule)
         if figure.value <= -HUNDRED:
-            return Problem(RateTooLow, f"{text} leaves no price at all.", _REMEDY)
+            found = f"{text} leaves no price at all."
+            return Problem(RateOutOfRange, found, _REMEDY)
         return figure.value / HUNDRED
 
 
@@ -70,7 +74,7 @@ def read_prices(
         name = row.text("name", needed="what the prices are of")
         rate = read_range(row, RateTerms(), ends)
         evidence = read_evidence(row, folder)
-        if rate is None or not _stays_above_nothing(row, rate, ends):
+        if rate is None or not _stays_in_range(row, rate, ends):
             continue
         series.append(
             PriceSeries(
@@ -80,16 +84,20 @@ def read_prices(
     return tuple(series)
 
 
-def _stays_above_nothing(row: Row, rate: CostRange, ends: EndsRule) -> bool:
-    """Whether no draw of the rate takes the whole price away; notes if one does."""
+def _stays_in_range(row: Row, rate: CostRange, ends: EndsRule) -> bool:
+    """Whether every draw of the rate leaves a price within reason; notes if not."""
     if not ends.is_readable and not row.cell("ends"):
         return True  # without a curve nothing can be said
-    lowest = float(rate.distribution.at_score(LOWEST_SCORE))
-    if lowest > -1.0:
+    lowest, highest = (
+        float(rate.distribution.at_score(score))
+        for score in (-FURTHEST_SCORE, FURTHEST_SCORE)
+    )
+    if lowest > -1.0 and highest <= HIGHEST_RATE:
         return True
-    found = f"The lowest rate that this {rate.shape} range can give is "
-    found += f"{100 * lowest:.4g} % a year."
+    found = f"This {rate.shape} range gives rates from {100 * lowest:,.5g} % to "
+    found += f"{100 * highest:,.5g} % a year."
     column = "outcomes" if rate.shape in LISTED else "low"
-    remedy = "Narrow the range, or name a shape with limits."
-    row.refuse(column, Problem(RateTooLow, found, remedy))
+    column = "likely" if rate.shape is ShapeName.FIXED else column
+    remedy = "Correct the figures, narrow the range, or name a shape with limits."
+    row.refuse(column, Problem(RateOutOfRange, found, remedy))
     return False

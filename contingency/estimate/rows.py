@@ -27,6 +27,7 @@ from contingency.estimate.faults import (
     IdReserved,
     IdTwice,
     IdUnusable,
+    WindowTooFar,
 )
 from contingency.estimate.nouns import PROJECT_WIDE
 
@@ -35,6 +36,10 @@ Value = TypeVar("Value")
 MOST_OCCURRENCES = 1_000
 """Occurrences of one event that may be expected.  A choice of ours: a Poisson number
 with that mean varies by some 3 % (1/√1000), less than what a range says anyway."""
+
+FIRST_YEAR, LAST_YEAR = 1900, 2200
+"""Years of a window.  A choice of ours: a slip of the pen is found before it makes
+prices grow for centuries."""
 
 RESERVED = (PROJECT_WIDE, "all")
 """Words that stand for several packages and can be the id of none."""
@@ -144,6 +149,11 @@ class Row:
             found = f"{finish} {last} lies before {start} {first}."
             problem = Problem(DatesReversed, found, "Swap or correct the dates.")
             self.refuse(finish, problem)
+        for column, day in ((start, first), (finish, last)):
+            if day and not FIRST_YEAR <= day.year <= LAST_YEAR:
+                found = f"{column} is {day}."
+                remedy = "Correct the year."
+                self.refuse(column, Problem(WindowTooFar, found, remedy))
         return first, last
 
     def word(self, column: str, words: Iterable[str], default: str = "") -> str:

@@ -66,15 +66,33 @@ PRICES = (
     bad(
         "price_rate_that_leaves_nothing",
         series("metal", outcomes="-100%:0.25; 2%:0.5; 6%:0.25"),
-        (f"{METAL}, outcomes", "rate-too-low", '"-100%" leaves no price at all.'),
+        (f"{METAL}, outcomes", "rate-out-of-range", '"-100%" leaves no price at all.'),
     ),
     bad(
         "price_rate_drawn_below_nothing",
         series("wages", low="-20%", likely="", high="20%", shape="normal"),
         (
             f"{WAGES}, low",
-            "rate-too-low",
-            "The lowest rate that this normal range can give is -129.5 % a year.",
+            "rate-out-of-range",
+            "This normal range gives rates from -129.53 % to 129.53 % a year.",
+        ),
+    ),
+    bad(
+        "price_rate_beyond_reason",
+        series("wages", low="", likely="2500%", high="", shape="fixed", ends=""),
+        (
+            f"{WAGES}, likely",
+            "rate-out-of-range",
+            "This fixed range gives rates from 2,500 % to 2,500 % a year.",
+        ),
+    ),
+    bad(
+        "window_in_another_millennium",
+        package("P100", finish="2926-09-30"),
+        (
+            "packages.csv:2, package P100 Design, finish",
+            "window-too-far",
+            "finish is 2926-09-30.",
         ),
     ),
     bad(
