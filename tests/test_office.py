@@ -28,6 +28,7 @@ from contingency.office import (
     typed_words,
     write_test_certificate,
 )
+from contingency.record import sign_offs
 from contingency.record.attachments import read_attachments
 from contingency.record.chain import read_register
 from contingency.record.issue_note import read_note
@@ -104,6 +105,28 @@ def test_a_change_of_the_inputs_is_seen_without_a_simulation(copy):
     assert {line.standing for line in standings} == {"lapsed"}
     assert standings[0].changed == ("packages.csv",)
     assert standings[0].since == WHEN
+
+
+def test_looking_needs_no_right_to_write(copy, monkeypatch):
+    """A folder that belongs to somebody else can be checked all the same."""
+    change(copy, "packages.csv", "1300", "1400")
+
+    def denied(*_, **__):
+        raise PermissionError(13, "Permission denied")
+
+    monkeypatch.setattr(sign_offs, "write_durably", denied)
+    standings = sign_off_standings(copy, read_estimate(copy), when=WHEN)
+
+    assert standings[0].standing == "lapsed"
+    assert standings[0].since is None
+    with pytest.raises(UnusablePath, match="Permission denied"):
+        sign_estimate(copy, role="prepared", name="Anna Example", when=WHEN)
+
+
+def test_records_need_a_folder_that_is_there(copy, tmp_path):
+    """Said before the simulation is run."""
+    with pytest.raises(UnusablePath, match="no-such-folder"):
+        issue_estimate(copy, records=tmp_path / "no-such-folder", when=WHEN)
 
 
 def test_the_draft_prints_how_sign_offs_stand(copy):

@@ -15,6 +15,7 @@ from pathlib import Path
 from typing import Literal
 
 from contingency.errors import (
+    BusyRecord,
     NoSuchRole,
     OtherSignatory,
     SamePerson,
@@ -189,21 +190,23 @@ def note_lapses(
 ) -> SignOffs:
     """Write down which sign-offs are found lapsed for the first time; return all.
 
-    Nothing is written if nothing new has lapsed.
+    Nothing is written if nothing new has lapsed, nor where the folder cannot be
+    written to or somebody is signing: whoever only looks must be able to.
 
     Raises
     ------
-    BusyRecord
-        busy-record.
     DamagedRecord
         damaged-record.
     """
     before = read_sign_offs(folder)
     if _with_new_lapses(before, roles, content, when) == before:
         return before
-    with held(folder / f".{FILE}.lock", what=str(folder / FILE)):
-        after = _with_new_lapses(read_sign_offs(folder), roles, content, when)
-        write_durably(folder / FILE, written_sign_offs(after))
+    try:
+        with held(folder / f".{FILE}.lock", what=str(folder / FILE)):
+            after = _with_new_lapses(read_sign_offs(folder), roles, content, when)
+            write_durably(folder / FILE, written_sign_offs(after))
+    except (OSError, BusyRecord):
+        return before
     return after
 
 
