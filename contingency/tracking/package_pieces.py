@@ -172,14 +172,24 @@ class PackagePiece:
             # Of ranges in money nothing follows it.
             spent = after.spent if base == after.base else before.spent
         source = after if Family.RANGES in on else before
-        if Family.RANGES not in self.families and (base, spent or 0.0) == (
-            after.base,
-            after.spent or 0.0,
-        ):
-            source = after
+        if Family.RANGES not in self.families:
+            # The same range twice: the one that is there, else the larger one, so
+            # that the way back is the way there.
+            at = (base, spent or 0.0)
+            after_is_nearer = _rest(after) >= _rest(before)
+            if at == (before.base, before.spent or 0.0):
+                after_is_nearer = False
+            if at == (after.base, after.spent or 0.0):
+                after_is_nearer = True
+            source = after if after_is_nearer else before
         side = self.new if source is after else self.old
         cost = side.cost(source.id, scores)
         return after, _moved(cost, source, base, spent)
+
+
+def _rest(package: WorkPackage) -> float:
+    """Return what is still to be spent of a package, money."""
+    return package.base - (package.spent or 0.0)
 
 
 def _ratio(part: float, whole: float) -> float:

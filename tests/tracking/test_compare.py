@@ -531,3 +531,15 @@ def test_a_systemic_risk_of_before_is_a_row():
     assert step.family is Family.SYSTEMIC
     signs = {row.id: np.sign(row.contingency) for row in step.rows}
     assert signs == {"S0": -1.0, "S1": 1.0, "S9": 1.0}
+
+
+def test_the_way_back_is_the_way_there_where_a_base_grew_many_times():
+    """A hybrid is read from the same revision in both directions."""
+    small = estimate(packages=with_row(PACKAGES, package("P1", 400.0, spent=120.0)))
+    large = estimate(packages=with_row(PACKAGES, package("P1", 2_500.0)))
+    there = {s.family: s for s in compare(small, large).bridge.steps}
+    back = {s.family: s for s in compare(large, small).bridge.steps}
+
+    assert there.keys() == back.keys() == {Family.ACTUALS, Family.UNEXPLAINED}
+    for family, step in there.items():
+        assert back[family].contingency == pytest.approx(-step.contingency, abs=1e-9)
