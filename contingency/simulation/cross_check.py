@@ -92,6 +92,7 @@ def cross_check(
     simulation: Simulation,
     exact: ExactMoments,
     percents: Sequence[int],
+    second: Array | None = None,
 ) -> CrossCheck:
     """Return both cross-checks of a run.
 
@@ -105,6 +106,8 @@ def cross_check(
         Mean and variance in closed form.
     percents : sequence of int
         The funded levels, whole percent.
+    second : (m,) array of money, optional
+        Totals by the second route, where they are drawn already.
 
     Returns
     -------
@@ -122,7 +125,7 @@ def cross_check(
     all levels (Bonferroni), widened by the engine's own error, must hold the engine's
     value.
     """
-    total = second_route_total(estimate)
+    total = second_route_total(estimate) if second is None else second
     blocks = simulation.total.reshape(simulation.blocks, simulation.block)
     steps = _steps(estimate)
     return CrossCheck(
