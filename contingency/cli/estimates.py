@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import argparse
+from contextlib import suppress
 from pathlib import Path
+from threading import Thread
 
 from contingency.cli.console import (
     CAUTION,
@@ -79,6 +81,8 @@ def check(options: argparse.Namespace) -> int:
 
 def report(options: argparse.Namespace) -> int:
     """Simulate, set the contingency, write the draft report."""
+    warm = Thread(target=_load_typesetting, daemon=True)
+    warm.start()
     from contingency.estimate.reading import read_estimate
     from contingency.office import sign_off_standings, typed_words
     from contingency.publish import publish_report
@@ -151,3 +155,12 @@ def calibrate(options: argparse.Namespace) -> int:
             f" {100 * record.high:3.0f} %"
         )
     return DONE
+
+
+def _load_typesetting() -> None:
+    """Load the library that sets the pages, while the figures are computed.
+
+    Where it cannot be loaded the report says so itself, with the remedy.
+    """
+    with suppress(ImportError, OSError):
+        import weasyprint  # noqa: F401
