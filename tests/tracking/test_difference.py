@@ -7,6 +7,7 @@ from contingency.estimate.nouns import (
     Evidence,
     Level,
     PairCorrelation,
+    PriceSeries,
     ShapeName,
     Statements,
 )
@@ -157,3 +158,18 @@ def test_money_of_another_price_date_is_listed_as_it_was_written():
     assert listed(later) == {
         ("estimate.toml", "", "price_date"): ("2026-03-31", "2027-03-31")
     }
+
+
+def test_price_series_and_the_financial_year_are_listed():
+    """A new series as a row, a new month as a key of estimate.toml."""
+    rate = CostRange(shape=ShapeName.FIXED, likely=0.03, written=("", "3%", "", ""))
+    later = estimate().model_copy(
+        update={
+            "price_series": (PriceSeries(id="steel", name="Steel", rate=rate, line=2),),
+            "financial_year_starts": 4,
+        }
+    )
+    found = listed(later)
+
+    assert ("prices.csv", "steel", "row") in found
+    assert found["estimate.toml", "", "financial_year_starts"] == ("", "4")
