@@ -85,6 +85,15 @@ DIGITS = Threshold(
     meaning="widest half of the interval",
 )
 
+COARSE = Threshold(
+    name="coarse_rounding_percent",
+    default=5,
+    unit="% of the contingency",
+    grade="H",
+    meaning="largest rounding step",
+    most=100,
+)
+
 
 @input_check(
     slug="level-without-authority",
@@ -363,6 +372,34 @@ def too_many_digits(material: Material, settings: Settings) -> Verdict:
     return [Hit(severity="note", message=message)]
 
 
+@result_check(
+    slug="coarse-rounding",
+    subject="level and presentation",
+    title="Rounded away",
+    catches="A rounding step so large that the printed contingency is another figure.",
+    rule="Rounding step in percent of the contingency at the target.",
+    thresholds=(COARSE,),
+    severities=("major",),
+    todo="Write a smaller rounding under [contingency].",
+    sources=(COMMON_PRACTICE,),
+)
+def coarse_rounding(material: Material, settings: Settings) -> Verdict:
+    """Find roundings that change the contingency they print."""
+    step = material.estimate.contingency.rounding
+    contingency = abs(material.target.contingency)
+    if contingency == 0.0:
+        return NotApplicable("The contingency is nought.")
+    share = 100.0 * step / contingency
+    if share <= settings.number(COARSE):
+        return []
+    currency = material.estimate.currency
+    message = (
+        f"Amounts are shown to the nearest {money(step, currency)}, {share:.0f} % of"
+        f" a contingency of {money(contingency, currency)}."
+    )
+    return [Hit(severity="major", message=message)]
+
+
 CHECKS = (
     level_without_authority,
     odd_level,
@@ -372,4 +409,5 @@ CHECKS = (
     no_spread,
     one_level_only,
     too_many_digits,
+    coarse_rounding,
 )

@@ -8,7 +8,7 @@ import json
 import sys
 from collections.abc import Callable, Sequence
 from contextlib import AbstractContextManager, nullcontext
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
     from contingency.assurance.findings import CheckOutcome, Finding
@@ -30,6 +30,7 @@ CAUTION = (
 )
 
 BAR_WIDTH = 40
+MOST_PLACES = 6
 
 
 def now() -> dt.datetime:
@@ -113,20 +114,9 @@ def workers(options: argparse.Namespace) -> AbstractContextManager[BlockRunner |
     return cluster(options.workers)
 
 
-def amount(value: float) -> str:
-    """Return money as the command line prints it: whole units, minus for less."""
-    return f"{value:,.0f}"
-
-
-def plain(rows: Sequence[Sequence[Any]], *, left: int = 1) -> str:
-    """Return rows as aligned text; the first `left` columns flush left."""
-    cells = [[str(cell) for cell in row] for row in rows]
-    widths = [max(len(row[i]) for row in cells) for i in range(len(cells[0]))]
-    return "\n".join(
-        "  "
-        + "  ".join(
-            cell.ljust(width) if i < left else cell.rjust(width)
-            for i, (cell, width) in enumerate(zip(row, widths, strict=True))
-        ).rstrip()
-        for row in cells
-    )
+def written(amount: float, step: float) -> str:
+    """Return money, a whole multiple of `step`, as the command line prints it."""
+    places = 0
+    while places < MOST_PLACES and abs(step - round(step, places)) > step * 1e-9:
+        places += 1
+    return f"{amount:,.{places}f}"

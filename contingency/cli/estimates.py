@@ -18,6 +18,7 @@ from contingency.cli.console import (
     progress_bar,
     say,
     workers,
+    written,
 )
 
 
@@ -86,6 +87,7 @@ def report(options: argparse.Namespace) -> int:
     from contingency.estimate.reading import read_estimate
     from contingency.office import sign_off_standings, typed_words
     from contingency.publish import publish_report
+    from contingency.quantities.rounding import round_amount
     from contingency.results import as_json
     from contingency.study import run_study
 
@@ -101,7 +103,7 @@ def report(options: argparse.Namespace) -> int:
     standings = sign_off_standings(
         options.estimate, estimate, results=as_json(results), when=now()
     )
-    written = publish_report(
+    paths = publish_report(
         study,
         options.out or Path(f"draft-{options.estimate.resolve().name}"),
         templates=options.templates,
@@ -113,13 +115,16 @@ def report(options: argparse.Namespace) -> int:
         print_json(results)
         return attention(study.findings)
     target, currency = study.target, estimate.currency
+    step = estimate.contingency.rounding
+    base = written(round_amount(estimate.base, step), step)
+    contingency = written(round_amount(target.contingency, step), step)
     print(f"{estimate.project}, revision {estimate.revision}")
     print(
-        f"  base {estimate.base:,.0f} {currency}; contingency at {target.name} "
-        f"{target.contingency:,.0f} {currency}, {target.percent_of_base:.1f} % of base"
+        f"  base {base} {currency}; contingency at {target.name} "
+        f"{contingency} {currency}, {target.percent_of_base:.1f} % of base"
     )
     print_findings(study.findings, study.checks_run)
-    for path in written:
+    for path in paths:
         print(f"  wrote {path}")
     print(CAUTION)
     return attention(study.findings)

@@ -298,6 +298,14 @@ CASES = (
     ),
     twin("too-many-digits", "to the nearest 50,000", sound_study),
     fault(
+        "coarse-rounding",
+        "to the nearest ten million",
+        lambda: half_width(60_000, rounding=10_000_000.0),
+        "major",
+        "to the nearest EUR 10.0 M",
+    ),
+    twin("coarse-rounding", "to the nearest 50,000", sound_study),
+    fault(
         "sign-off-incomplete",
         "nobody checks",
         lambda: sound_estimate(sign_offs=SIGN_OFFS[:1]),
