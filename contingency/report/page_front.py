@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 from dataclasses import dataclass, replace
+from pathlib import PurePosixPath
 
 from contingency.assurance.events import rare_large_events
 from contingency.assurance.findings import Finding
@@ -23,10 +24,12 @@ from contingency.report.wording import (
     plural,
     sentence,
     short_fingerprint,
+    signed,
 )
 from contingency.setting.drivers import Driver
 from contingency.setting.printed import PrintedFigures
 from contingency.study import Study
+from contingency.tracking.families import Family
 
 REQUIRED_ROLES = ("prepared", "checked", "approved")
 """Roles that have a line even if the estimate does not name them."""
@@ -146,6 +149,8 @@ class AnswerPage:
     set_by: str
     reason: str
     percent_of_base: str
+    since: str
+    """What moved since the revision before, one line; empty for a first revision."""
     base_is_enough: str
     middle: str
     """P10 to P90 of the total."""
@@ -273,6 +278,7 @@ def answer_page(
         set_by=clipped(rule.set_by, 120).rstrip(".") or "No authority is recorded",
         reason=sentence(clipped(rule.reason, 160)),
         percent_of_base=percent(target.percent_of_base / 100, 1),
+        since=since_words(study, amounts),
         base_is_enough=chance(study.chance_base_is_enough),
         middle=f"{amounts.cell(p10)} to {amounts.cell(p90)}",
         interval=f"{amounts.cell(target.low)} to {amounts.cell(target.high)}",
@@ -289,6 +295,34 @@ def answer_page(
         drivers=tuple(_top_driver(driver, amounts) for driver in inputs[:5]),
         cautions=_worst_cautions(study),
         attention=_attention(study.findings),
+    )
+
+
+def since_words(study: Study, amounts: Amounts) -> str:
+    """Say what moved since the revision before, as the ends of the bridge have it.
+
+    Empty for a first revision.  Base and contingency add up to the total, and each is
+    the sum of its column of the bridge.
+    """
+    found = study.comparison
+    if found is None:
+        return ""
+    unit = amounts.unit
+
+    def moved(amount: float) -> str:
+        return signed(amount / unit.size, unit.digits)
+
+    old, new = (found.printed_end(amounts.step, is_after=x) for x in (False, True))
+    base, contingency = new[0] - old[0], new[1] - old[1]
+    steps = zip(found.bridge.steps, found.printed(amounts.step), strict=True)
+    level = [row.contingency for step, row in steps if step.family is Family.LEVEL]
+    of_which = f" (of which level change {moved(level[0])})" if level else ""
+    dates = found.earlier.price_date != found.later.price_date
+    money = "; each in money of its own price date" if dates else ""
+    return (
+        f"Since revision {clipped(found.earlier.revision, 24)}: base {moved(base)}, "
+        f"contingency {moved(contingency)}{of_which}, "
+        f"total {moved(base + contingency)} ({amounts.caption}{money})."
     )
 
 

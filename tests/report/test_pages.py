@@ -2,6 +2,7 @@
 
 import dataclasses
 import json
+import re
 from pathlib import Path
 
 import pytest
@@ -19,6 +20,7 @@ from contingency.report.page_inputs import entered_step
 from contingency.report.pages import Report, make_pages
 from contingency.results import as_json
 from contingency.study import run_study
+from contingency.tracking.families import Family
 from tests.report.closed_refits import beside_others
 from tests.report.conftest import CREATED
 from tests.report.funded_refit import funded
@@ -231,8 +233,6 @@ def test_every_template_is_included_once():
 
 def test_contents_name_every_chapter_in_order():
     """With the words of its heading, and a link that leads to it."""
-    import re
-
     contents = (FOLDER / "contents.html").read_text(encoding="utf-8")
     contents, aside = contents.split("</ol>")
     links = re.findall(r'<a href="#([\w-]+)">([^<]+)</a>', contents)
@@ -340,3 +340,27 @@ def test_no_machine_path_reaches_the_context(refit, look):
     report = json.dumps(dataclasses.asdict(pages_of(refit, look).report))
 
     assert str(Path.cwd()) not in report
+
+
+def test_the_answer_says_what_moved_since_the_revision_before(look):
+    """With the level apart; base and contingency add up to the total, as printed."""
+    study = second_revision()
+    words = pages_of(study, look).report.answer.since
+    figures = re.findall(r"[+−][\d,]+|(?<= )0(?=[ ,])", words)
+    base, contingency, level, total = (
+        int(one.replace(",", "").replace("−", "-")) for one in figures
+    )
+    bridge = study.comparison.bridge
+    printed = study.comparison.printed(1000.0)
+
+    assert words.startswith("Since revision B: base ")
+    assert words.endswith("(GBP\xa0thousand; each in money of its own price date).")
+    assert total == base + contingency
+    assert base == sum(step.base for step in printed) / 1000
+    assert contingency == sum(step.contingency for step in printed) / 1000
+    assert level == pytest.approx(bridge.step(Family.LEVEL).contingency / 1000, abs=1)
+
+
+def test_a_first_revision_has_moved_nothing(refit, look):
+    """The line is left out."""
+    assert pages_of(refit, look).report.answer.since == ""

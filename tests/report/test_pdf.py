@@ -1,5 +1,6 @@
 """The PDF: its bytes, its words, its figures, and what travels inside."""
 
+import dataclasses
 import datetime as dt
 import io
 import json
@@ -24,6 +25,7 @@ from contingency.report.wording import in_unit, table_unit
 from contingency.results import as_json
 from contingency.study import run_study
 from tests.report.conftest import CREATED
+from tests.report.second_revision import second_revision
 from tests.report.ship_refit import ship_refit
 from tests.report.test_pages import bare
 
@@ -189,11 +191,17 @@ def test_the_answer_stays_on_one_page_with_words_without_end(refit):
             ),
         }
     )
-    pdf = written(run_study(long), draft=True)
+    changed = second_revision().comparison
+    before = dataclasses.replace(changed.earlier, revision=words)
+    study = dataclasses.replace(
+        run_study(long), comparison=dataclasses.replace(changed, earlier=before)
+    )
+    pdf = written(study, draft=True)
     pages = [plain(page.extract_text()) for page in PdfReader(io.BytesIO(pdf)).pages]
     answer = [i for i, page in enumerate(pages) if "asked for on a base" in page]
 
     assert len(answer) == 1
+    assert "Since revision A name" in pages[answer[0]]
     assert "What to bear in mind" in pages[answer[0]]
     assert pages[answer[0] + 1].startswith("DRAFT Contents")
 
@@ -327,8 +335,6 @@ def test_more_files_can_travel_inside(small):
 
 def test_two_files_cannot_have_one_name(small):
     """An estimate's own results.json would be mistaken for ours."""
-    import dataclasses
-
     mine = SourceFile(name="results.json", content=b"{}")
     estimate = small.estimate.model_copy(update={"sources": (mine,)})
     with pytest.raises(AttachmentNameTaken) as fault:
@@ -342,8 +348,6 @@ def test_two_files_cannot_have_one_name(small):
 
 def test_a_character_that_no_font_has_is_named(small):
     """Before anything is set; with its name and the words around it."""
-    import dataclasses
-
     estimate = small.estimate.model_copy(update={"project": "Refit of Halcyon 🚢 now"})
     with pytest.raises(CharacterWithoutFont) as fault:
         written(dataclasses.replace(small, estimate=estimate))
