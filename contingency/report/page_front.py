@@ -187,7 +187,7 @@ def title_page(
         ("Price date", date(estimate.price_date)),
         ("Currency", estimate.currency),
         ("Level asked for", study.target.name),
-        ("Previous revision", estimate.previous or NOTHING),
+        ("Previous revision", _previous(study)),
         ("Date of this report", issued_on),
         ("Tool", tool),
         ("Trials and seed", f"{count(study.simulation.trials)}; {estimate.run.seed}"),
@@ -206,6 +206,14 @@ def title_page(
         running_reference=f"Revision {clipped(estimate.revision, 24)}  ·  {status}  ·  "
         f"Inputs {short_fingerprint(estimate.fingerprint)}",
     )
+
+
+def _previous(study: Study) -> str:
+    """Return the letter of the revision before, or its folder where it was not read."""
+    if study.comparison is not None:
+        return clipped(study.comparison.earlier.revision, 40)
+    named = PurePosixPath(study.estimate.previous.replace("\\", "/")).name
+    return clipped(named, 40) or NOTHING
 
 
 def _class_words(estimate_class: int | None) -> str:

@@ -364,3 +364,18 @@ def test_the_answer_says_what_moved_since_the_revision_before(look):
 def test_a_first_revision_has_moved_nothing(refit, look):
     """The line is left out."""
     assert pages_of(refit, look).report.answer.since == ""
+
+
+@pytest.mark.parametrize(
+    ("previous", "words"),
+    [("../rev-b", "rev-b"), ("..\\rev-b\\", "rev-b"), ("", "–")],
+)
+def test_the_cover_names_the_revision_before(refit, look, previous, words):
+    """By its letter; by its folder's name where it was not read; never by a path."""
+    facts = pages_of(second_revision(), look).report.title.facts
+    estimate = refit.estimate.model_copy(update={"previous": previous})
+    unread = dataclasses.replace(refit, estimate=estimate)
+    others = pages_of(unread, look).report.title.facts
+
+    assert {f.name: f.words for f in facts}["Previous revision"] == "B"
+    assert {f.name: f.words for f in others}["Previous revision"] == words
