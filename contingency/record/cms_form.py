@@ -17,6 +17,16 @@ from asn1crypto import x509 as asn1_x509
 from cryptography import x509
 from cryptography.exceptions import InvalidSignature
 
+_CONTENT = bytes.fromhex("06 a0")
+"""Tags of the parts of the whole: what it is, and the signed data."""
+_SIGNED_DATA = bytes.fromhex("02 31 30 a0 31")
+"""Tags of the parts of signed data: version, digests, content, certificates, signer."""
+_SIGNER = bytes.fromhex("02 30 30 a0 30 04")
+"""Tags of the parts of a signer: version, certificate, digest, what is signed,
+algorithm, signature."""
+_BESIDE = b"\xa1"
+"""Tag of what stands beside a signature."""
+
 _DIGESTS = {"sha256": sha256, "sha384": sha384, "sha512": sha512}
 
 _ALGORITHMS = frozenset({"rsassa_pkcs1v15", "rsassa_pss", "ecdsa"})
@@ -72,6 +82,8 @@ def form_faults(signature: bytes) -> tuple[str, ...]:
         faults.append("it holds a document of its own")
     if signed["version"].native != "v1":
         faults.append("its version is another")
+    if _has_odd_parts(signature, signed):
+        faults.append("it has parts that no signature has")
     faults += _unsigned_faults(signed["signer_infos"][0])
     # A time stamp was made elsewhere, in whatever form of ASN.1, and is left out.
     beside = signed["signer_infos"][0]["unsigned_attrs"].dump()
@@ -208,6 +220,8 @@ def _unsigned_faults(signer: Any) -> Iterator[str]:  # noqa: ANN401
         return
     for fault in _signed_data_faults(token["content"]):
         yield f"in its time stamp: {fault}"
+    if token["content"]["version"].native != "v3":  # RFC 5652, section 5.1
+        yield "the version of its time stamp is another"
     stamped_by = token["content"]["signer_infos"][0]["unsigned_attrs"]
     if not isinstance(stamped_by, core.Void):
         yield "something stands beside its time stamp"
@@ -222,12 +236,41 @@ def _is_der(part: bytes, *, leaving_out: bytes) -> bool:
         if size is None or tag == 0 or tag & 0x1F == 0x1F:
             return False
         whole = part[place : place + size]
-        if tag & 0x20 and whole != leaving_out:
-            head = 2 + (whole[1] & 0x7F if whole[1] > 0x7F else 0)
-            if not _is_der(whole[head:], leaving_out=leaving_out):
-                return False
+        is_made_of_parts = tag & 0x20 and whole != leaving_out
+        if is_made_of_parts and not _is_der(_inside(whole), leaving_out=leaving_out):
+            return False
         place += size
     return True
+
+
+def _has_odd_parts(signature: bytes, signed: Any) -> bool:  # noqa: ANN401
+    """Whether something stands in a signature that a reader would skip over."""
+    (signer,) = signed["signer_infos"]
+    return (
+        _tags(signature) != _CONTENT
+        or _tags(_inside(signed.dump())) != _SIGNED_DATA
+        or _tags(signer.dump()) not in {_SIGNER, _SIGNER + _BESIDE}
+    )
+
+
+def _tags(whole: bytes) -> bytes:
+    """Return the tags of the parts of a DER object that is made of parts."""
+    inside, place, tags = _inside(whole), 0, bytearray()
+    while place < len(inside):
+        size = _length(inside[place:])
+        if size is None:
+            return b""
+        tags.append(inside[place])
+        place += size
+    return bytes(tags)
+
+
+def _inside(whole: bytes) -> bytes:
+    """Return what a DER object holds; nothing where its length is none."""
+    size = _length(whole)
+    if size is None:
+        return b""
+    return whole[2 + (whole[1] & 0x7F if whole[1] > 0x7F else 0) : size]
 
 
 def _length(padded: bytes) -> int | None:
