@@ -24,6 +24,7 @@ from contingency.report.chart_parts import (
 from contingency.report.chart_total import Mark, cumulative_chart, density_chart
 from contingency.report.look import Look
 from contingency.report.wording import (
+    NOTHING,
     SPACE,
     Amounts,
     MoneyUnit,
@@ -159,7 +160,8 @@ def composition(printed: PrintedFigures, amounts: Amounts, look: Look) -> Chart:
         Part(
             name=name,
             amount=amount,
-            words=f"{amounts.full(amount)}{SPACE}{SPACE}{share}{SPACE}%",
+            words=f"{amounts.full(amount)}{SPACE}{SPACE}"
+            + (f"{share}{SPACE}%" if total.contingency > 0.0 else NOTHING),
         )
         for name, amount, share in zip(
             names,

@@ -141,6 +141,8 @@ class AnswerPage:
     """The answer, on one page."""
 
     contingency: str
+    release: str
+    """Where the level lies if nothing is asked for above the base; else empty."""
     request: str
     base: str
     level: str
@@ -279,6 +281,7 @@ def answer_page(
     inputs = [d for d in study.drivers if d.kind != "cause"]
     return AnswerPage(
         contingency=amounts.full(printed.total.contingency),
+        release=_release(printed.total.contingency, amounts),
         request=amounts.full(printed.request),
         base=amounts.full(printed.total.base),
         level=target.name,
@@ -304,6 +307,15 @@ def answer_page(
         cautions=_worst_cautions(study),
         attention=_attention(study.findings),
     )
+
+
+def _release(contingency: float, amounts: Amounts) -> str:
+    """Say where the level lies if it does not lie above the base; empty if it does."""
+    if contingency > 0.0:
+        return ""
+    if contingency == 0.0:
+        return "at the base"
+    return f"{amounts.full(-contingency)} below the base"
 
 
 def since_words(study: Study, amounts: Amounts) -> str:

@@ -179,6 +179,8 @@ class CoveragePage:
 
     unit: str
     level: str
+    has_contingency: bool
+    """Whether there is an amount above the base that a cost can be large against."""
     large: str
     """Share of the contingency above which an impact is large, in words."""
     thin: str
@@ -248,16 +250,21 @@ def split_page(study: Study, printed: PrintedFigures, amounts: Amounts) -> Split
         ("Risk events", "what may or may not happen, savings included"),
     )
     own = (total.ranges, total.systemic, total.events)
+
+    def share(whole_percent: int) -> str:
+        """Return a share of the contingency; of none there are no shares."""
+        return f"{fixed(whole_percent)}{SPACE}%" if total.contingency > 0 else NOTHING
+
     rows = [
         SplitRow(
             name=name,
             what=what,
             amount=cell(amount),
-            share=f"{fixed(share)}{SPACE}%",
+            share=share(whole_percent),
             second=cell(second),
             is_sum=False,
         )
-        for (name, what), amount, share, second in zip(
+        for (name, what), amount, whole_percent, second in zip(
             words, own, printed.shares, printed.second_split, strict=True
         )
     ]
@@ -265,7 +272,7 @@ def split_page(study: Study, printed: PrintedFigures, amounts: Amounts) -> Split
         name="Estimate uncertainty",
         what="ranges and systemic risks together",
         amount=cell(printed.estimate_uncertainty),
-        share=f"{fixed(printed.estimate_uncertainty_share)}{SPACE}%",
+        share=share(printed.estimate_uncertainty_share),
         second=cell(printed.second_estimate_uncertainty),
         is_sum=True,
     )
@@ -273,7 +280,7 @@ def split_page(study: Study, printed: PrintedFigures, amounts: Amounts) -> Split
         name="Contingency",
         what=f"at {study.target.name}",
         amount=cell(total.contingency),
-        share=f"100{SPACE}%" if total.contingency else NOTHING,
+        share=share(100),
         second=cell(total.second_opinion),
         is_sum=True,
     )
@@ -401,6 +408,7 @@ def coverage_page(
     return CoveragePage(
         unit=amounts.caption,
         level=study.target.name,
+        has_contingency=study.target.contingency > 0.0,
         large=f"{plain(100 * large)}{SPACE}%",
         thin=f"{plain(100 * thin)}{SPACE}%",
         thin_count=", ".join(thin_ones),

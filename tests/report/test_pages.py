@@ -18,9 +18,11 @@ from contingency.report.folder import ENTRY, render_html, sandbox, templates_fol
 from contingency.report.page_front import sign_off_rows
 from contingency.report.page_inputs import entered_step
 from contingency.report.pages import Report, make_pages
+from contingency.report.wording import currency_amount
 from contingency.results import as_json
 from contingency.study import run_study
 from contingency.tracking.families import Family
+from contingency.verify.printed import check_printed, figures_to_print
 from tests.report.closed_refits import beside_others
 from tests.report.conftest import CREATED
 from tests.report.funded_refit import funded
@@ -112,6 +114,7 @@ def studies(refit):
         run_study(beside_others()),
         run_study(funded()),
         second_revision(),
+        run_study(released(refit.estimate)),
     ]
 
 
@@ -379,3 +382,32 @@ def test_the_cover_names_the_revision_before(refit, look, previous, words):
 
     assert {f.name: f.words for f in facts}["Previous revision"] == "B"
     assert {f.name: f.words for f in others}["Previous revision"] == words
+
+
+def released(refit):
+    """The refit with a base that is far too high for its ranges."""
+    first, *others = refit.packages
+    high = first.model_copy(update={"base": first.base + 40e6})
+    return refit.model_copy(update={"packages": (high, *others)})
+
+
+def test_a_level_below_the_base_is_told_as_a_release(look):
+    """Nothing is asked for, and there are no shares of what is not there."""
+    study = run_study(released(ship_refit()))
+    report = pages_of(study, look).report
+    below = currency_amount("GBP", -round(study.target.contingency, -3))
+    text = " ".join(re.sub("<[^>]+>", " ", render_html(report, FOLDER)).split())
+
+    assert study.target.contingency < 0
+    assert report.answer.release == f"{below} below the base"
+    assert f"P80 lies {' '.join(below.split())} below the base of GBP" in text
+    assert "nothing is asked for above it" in text
+    assert "A contingency of" not in text
+    assert {row.share for row in report.split.rows} == {"–"}
+    assert not report.coverage.has_contingency
+    assert "No threat costs more" not in text
+    check = check_printed(
+        [f"{text} {report.answer.chart_alt}"],
+        figures_to_print(study.results(), currency="GBP", step=1000.0),
+    )
+    assert check.holds, check.missing
