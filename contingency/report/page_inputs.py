@@ -25,6 +25,7 @@ from contingency.report.wording import (
     listed,
     plain,
     probability,
+    sentence,
 )
 from contingency.study import Study
 
@@ -239,6 +240,12 @@ def _package_notes(package: WorkPackage, amounts: Amounts) -> list[str]:
     notes = _as_written(package.cost)
     if package.spent is not None:
         notes.append(f"Spent: {amounts.cell(package.spent)}.")
+    if package.progress is not None:
+        notes.append(f"Work done: {probability(package.progress)}.")
+    notes += _price_notes(package)
+    if package.holds_allowance is not None:
+        holds = "holds an" if package.holds_allowance else "holds no"
+        notes.append(f"The base {holds} allowance for risk.")
     if package.loads:
         loads = ", ".join(f"{one.cause} {plain(one.weight)}" for one in package.loads)
         notes.append(f"Follows: {loads}.")
@@ -246,6 +253,13 @@ def _package_notes(package: WorkPackage, amounts: Amounts) -> list[str]:
         profile = f", {package.spend}" if package.spend else ""
         notes.append(f"To be spent {_window(package.start, package.finish)}{profile}.")
     return notes
+
+
+def _price_notes(package: WorkPackage) -> list[str]:
+    """Return in which money the base is, where the row says so."""
+    words = [f"{package.price_basis} money"] if package.price_basis else []
+    words += [f"of {date(package.price_date)}"] if package.price_date else []
+    return [f"Prices: {' '.join(words)}."] if words else []
 
 
 def _as_written(cost: CostRange) -> list[str]:
@@ -407,9 +421,22 @@ def _event_notes(event: RiskEvent, estimate: Estimate, amounts: Amounts) -> list
         part = f", {probability(share)} retained" if share is not None else ""
         clause = f" ({event.clause})" if event.clause else ""
         notes.append(f"By contract {event.contract}{part}{clause}.")
+    elif event.clause:
+        notes.append(f"Contract: {event.clause}.")
+    if event.in_scope is not None:
+        where = "Inside" if event.in_scope else "Outside"
+        notes.append(f"{where} the approved scope.")
+    notes += _review_notes(event)
     if event.held_by:
         notes.append(f"Beyond the level held by: {event.held_by}.")
     return notes
+
+
+def _review_notes(event: RiskEvent) -> list[str]:
+    """Return when the event was looked at and when it will be again, where given."""
+    words = [f"Reviewed on {date(event.reviewed_on)}"] if event.reviewed_on else []
+    words += [f"next review {date(event.next_review)}"] if event.next_review else []
+    return [sentence(", ".join(words))] if words else []
 
 
 def _response(event: RiskEvent, estimate: Estimate, amounts: Amounts) -> str:

@@ -1,6 +1,7 @@
 """The page context: golden, complete, and used to the last field."""
 
 import dataclasses
+import datetime as dt
 import json
 import re
 from pathlib import Path
@@ -411,3 +412,52 @@ def test_a_level_below_the_base_is_told_as_a_release(look):
         figures_to_print(study.results(), currency="GBP", step=1000.0),
     )
     assert check.holds, check.missing
+
+
+def test_what_is_entered_beside_a_range_stands_in_the_notes(refit, look):
+    """Of packages and of events: every optional cell that no column shows."""
+    day = dt.date(2030, 6, 30)
+    estimate = refit.estimate
+    package = estimate.packages[0].model_copy(
+        update={
+            "progress": 0.4,
+            "price_basis": "outturn",
+            "price_date": day,
+            "holds_allowance": True,
+        }
+    )
+    shared = estimate.events[0].model_copy(
+        update={
+            "contract": "shared",
+            "retained_share": 0.25,
+            "clause": "cl. 61",
+            "in_scope": True,
+            "reviewed_on": day,
+            "next_review": day.replace(year=2031),
+        }
+    )
+    outside = estimate.events[1].model_copy(
+        update={"contract": None, "clause": "cl. 7", "in_scope": False}
+    )
+    changed = estimate.model_copy(
+        update={
+            "packages": (package, *estimate.packages[1:]),
+            "events": (shared, outside, *estimate.events[2:]),
+        }
+    )
+    study = dataclasses.replace(refit, estimate=changed)
+    page = pages_of(study, look).report.inputs
+    said = page.packages[0].rows[0].notes.replace("\xa0", " ")
+    first, second = (event.notes.replace("\xa0", " ") for event in page.events[:2])
+    plain = pages_of(refit, look).report.inputs.packages[0].rows[0].notes
+
+    assert "Work done: 40 %." in said
+    assert "Prices: outturn money of 30 June 2030." in said
+    assert "The base holds an allowance for risk." in said
+    assert "By contract shared, 25 % retained (cl. 61)." in first
+    assert "Inside the approved scope." in first
+    assert "Reviewed on 30 June 2030, next review 30 June 2031." in first
+    assert "Contract: cl. 7." in second
+    assert "Outside the approved scope." in second
+    assert "allowance" not in plain
+    assert "Prices" not in plain
