@@ -17,10 +17,13 @@ from contingency.report.look import characters_of, read_look
 from contingency.report.page_front import TypedSignOff
 from contingency.report.pages import make_pages
 from contingency.report.typesetting import AttachedFile, Shelf, set_pages
+from contingency.report.wording import count, listed
 from contingency.study import Study
 
 RESULTS = "results.json"
 MANIFEST = "manifest.json"
+MOST_NAMED = 10
+"""Characters without a font that one message names."""
 
 
 def write_report(
@@ -160,8 +163,9 @@ def _manifest(files: list[AttachedFile], fingerprint: str) -> bytes:
 def _refuse_characters_without_font(
     text: str, fonts: frozenset[Path], fallback: Path
 ) -> None:
-    """Raise if a character of the report is in none of the fonts it may be set in.
+    """Raise if characters of the report are in none of the fonts they may be set in.
 
+    All of them are named at once, up to ten; the rest are counted.
     A character is safe in the font that all others fall back on, or in all of the
     others: the style sheet decides where it is set.
     """
@@ -169,17 +173,31 @@ def _refuse_characters_without_font(
     safe = frozenset.intersection(*faces) if faces else frozenset()
     if fallback in fonts:
         safe |= characters_of(fallback)
-    for character in sorted(set(text) - safe):
-        if unicodedata.category(character) in ("Cc", "Cf", "Zl", "Zp"):
-            continue
-        name = unicodedata.name(character, "no name")
-        raise CharacterWithoutFont(
-            where=_around(character, text),
-            found=f"{character!r} (U+{ord(character):04X}, {name}) is in no font of "
-            "the report.",
-            rule="Every character must be in a font that travels inside the report.",
-            remedy="Write it otherwise, or add a font to an own templates folder.",
-        )
+    missing = [
+        character
+        for character in sorted(set(text) - safe)
+        if unicodedata.category(character) not in ("Cc", "Cf", "Zl", "Zp")
+    ]
+    if not missing:
+        return
+    named = [_named(character) for character in missing[:MOST_NAMED]]
+    if len(missing) > MOST_NAMED:
+        named.append(f"{count(len(missing) - MOST_NAMED)} more")
+    verb = "is" if len(missing) == 1 else "are"
+    raise CharacterWithoutFont(
+        where=_around(missing[0], text),
+        found=f"{listed(named)} {verb} in no font of the report.",
+        rule="Every character must be in a font that travels inside the report.",
+        remedy="Write it otherwise, or add a font to an own templates folder."
+        if len(missing) == 1
+        else "Write them otherwise, or add a font to an own templates folder.",
+    )
+
+
+def _named(character: str) -> str:
+    """Return a character with its number and its name."""
+    name = unicodedata.name(character, "no name")
+    return f"{character!r} (U+{ord(character):04X}, {name})"
 
 
 def _around(character: str, text: str) -> str:

@@ -356,6 +356,27 @@ def test_a_character_that_no_font_has_is_named(small):
     assert "Halcyon" in fault.value.where
 
 
+@pytest.mark.parametrize(
+    ("number", "end"),
+    [
+        (1, "is in"),
+        (2, "are in"),
+        (10, "are in"),
+        (11, "and 1 more are in"),
+        (14, "and 4 more are in"),
+    ],
+)
+def test_all_characters_without_a_font_are_named_at_once(small, number, end):
+    """Up to ten; the others are counted, so that nobody runs it once for each."""
+    odd = "".join(chr(0x1F680 + i) for i in range(number))
+    estimate = small.estimate.model_copy(update={"project": f"Refit {odd}"})
+    with pytest.raises(CharacterWithoutFont) as fault:
+        written(dataclasses.replace(small, estimate=estimate))
+
+    assert fault.value.found.count("(U+1F6") == min(number, 10)
+    assert f"{end} no font of the report." in fault.value.found
+
+
 # ---- the document ----
 
 
