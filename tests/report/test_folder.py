@@ -221,6 +221,22 @@ def test_an_own_folder_makes_an_own_report(folder, refit, results):
     )
 
 
+@pytest.mark.parametrize(
+    ("name", "found"),
+    [("nowhere", "There is no such folder."), ("look.toml", "It is a file")],
+)
+def test_a_folder_that_is_not_there_is_said_to_be_missing(
+    folder, refit, results, name, found
+):
+    """And not that one of its files cannot be used."""
+    with pytest.raises(TemplateFault) as fault:
+        write_report(refit, templates=folder / name, created=CREATED, results=results)
+
+    assert name in fault.value.where
+    assert "templates folder" in fault.value.where
+    assert fault.value.found.startswith(found)
+
+
 def test_the_document_names_every_file_and_every_picture(look, results):
     """`docs/own-templates.md` is what an organisation works from."""
     document = (ROOT / "docs" / "own-templates.md").read_text(encoding="utf-8")
