@@ -187,6 +187,8 @@ class CoveragePage:
     """Coverage below which an event is not meaningfully funded, in words."""
     thin_count: str
     """How many events that concerns, in words; empty for none."""
+    has_repeated: bool
+    """Whether a row is of an event that can happen more than once."""
     rows: tuple[CoverageRow, ...]
 
 
@@ -412,6 +414,7 @@ def coverage_page(
         large=f"{plain(100 * large)}{SPACE}%",
         thin=f"{plain(100 * thin)}{SPACE}%",
         thin_count=", ".join(thin_ones),
+        has_repeated=any(one.event.happens == "repeatedly" for one in ordered),
         rows=tuple(
             CoverageRow(
                 id=one.event.id,

@@ -221,6 +221,33 @@ def test_an_own_folder_makes_an_own_report(folder, refit, results):
     )
 
 
+def test_a_heading_and_a_first_row_do_not_stay_behind(folder, refit, results):
+    """Wherever on a page a table begins, its first two rows and its heading agree."""
+    rows = "".join(
+        f"<tr><th scope='row'>Row{i}</th><td>x</td></tr>" for i in range(1, 7)
+    )
+    starts = range(10, 50)
+    page = "".join(
+        f'<section style="break-before: page">{"<p>Filler</p>" * n}<h2>Head</h2>'
+        f"<p>Before</p><table><caption><b>A</b></caption><thead><tr>"
+        f"<th scope='col'>Name</th><th scope='col'>Cell</th></tr></thead>"
+        f"<tbody>{rows}</tbody></table></section>"
+        for n in starts
+    )
+    path = folder / ENTRY
+    text = path.read_text(encoding="utf-8")
+    head, _, _ = text.partition("<body>")
+    path.write_text(f"{head}<body><main>{page}</main></body></html>", encoding="utf-8")
+    pdf = write_report(refit, templates=folder, created=CREATED, results=results)
+    sheets = [sheet.extract_text() for sheet in pypdf.PdfReader(io.BytesIO(pdf)).pages]
+    with_head = [sheet for sheet in sheets if "Head" in sheet]
+
+    assert len(with_head) == len(starts)
+    assert len(sheets) > len(starts), "no table reached the foot of a page"
+    for sheet in with_head:
+        assert {"Before", "Row1", "Row2"} <= set(sheet.split()), sheet
+
+
 @pytest.mark.parametrize(
     ("name", "found"),
     [("nowhere", "There is no such folder."), ("look.toml", "It is a file")],

@@ -461,3 +461,15 @@ def test_what_is_entered_beside_a_range_stands_in_the_notes(refit, look):
     assert "Outside the approved scope." in second
     assert "allowance" not in plain
     assert "Prices" not in plain
+
+
+def test_covered_is_explained_where_an_event_can_happen_repeatedly(refit, look):
+    """One occurrence against all of them; not said where it would only puzzle."""
+    said = "mean cost is that of one occurrence"
+    repeated = [e for e in refit.estimate.open_events if e.happens == "repeatedly"]
+    report = pages_of(refit, look).report
+    other = pages_of(run_study(bare()), look).report
+
+    assert repeated
+    assert said in render_html(report, FOLDER)
+    assert said not in render_html(other, FOLDER)
