@@ -183,3 +183,12 @@ def test_the_office_from_sign_off_to_verification(small, monkeypatch, capsys):
     )
     main(["check", str(small)])
     assert capsys.readouterr().out.count("has lapsed: packages.csv changed") == 3
+
+
+def test_own_templates_that_are_not_there_are_missed_before_the_work(tmp_path, capsys):
+    """Nothing is simulated for a folder that cannot be used."""
+    call = ["report", str(SMALL), "--templates", str(tmp_path / "none")]
+
+    assert main([*call, "--out", str(tmp_path / "out")]) == WRONG
+    assert "template-fault" in capsys.readouterr().err
+    assert not (tmp_path / "out").exists()

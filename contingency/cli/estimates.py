@@ -88,10 +88,14 @@ def report(options: argparse.Namespace) -> int:
     from contingency.office import sign_off_standings, typed_words
     from contingency.publish import publish_report
     from contingency.quantities.rounding import round_amount
+    from contingency.report.folder import existing_folder
     from contingency.results import as_json
     from contingency.study import run_study
 
     estimate = read_estimate(options.estimate)
+    if options.templates is not None:
+        # Before the work, and not after it.
+        existing_folder(options.templates)
     with workers(options) as runner:
         study = run_study(
             estimate,

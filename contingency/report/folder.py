@@ -41,6 +41,27 @@ def templates_folder() -> Path:
     return inside if inside.is_dir() else package.parent / "report_templates"
 
 
+def existing_folder(folder: Path) -> Path:
+    """Return the folder of templates if it is one.
+
+    Raises
+    ------
+    TemplateFault
+        template-fault.  It is not there, or it is a file.
+    """
+    if folder.is_dir():
+        return folder
+    what = (
+        "It is a file, not a folder" if folder.exists() else "There is no such folder"
+    )
+    raise TemplateFault(
+        where=f"templates folder, {str(folder)!r}",
+        found=f"{what}.",
+        rule="Own templates are a folder, a copy of the tool's report_templates.",
+        remedy="Correct the path, or leave the option out for the tool's own pages.",
+    )
+
+
 def file_of(folder: Path, name: str) -> Path:
     """Return the path of a file of the folder.
 

@@ -10,13 +10,13 @@ from collections.abc import Iterable
 from hashlib import sha256
 from pathlib import Path
 
-from contingency.errors import (
-    AttachmentNameTaken,
-    CharacterWithoutFont,
-    TemplateFault,
-)
+from contingency.errors import AttachmentNameTaken, CharacterWithoutFont
 from contingency.report.draft_mark import draft_marks
-from contingency.report.folder import render_html, templates_folder
+from contingency.report.folder import (
+    existing_folder,
+    render_html,
+    templates_folder,
+)
 from contingency.report.look import characters_of, read_look
 from contingency.report.page_front import TypedSignOff
 from contingency.report.pages import make_pages
@@ -79,7 +79,7 @@ def write_report(
     The folder of templates is trusted to make the page, not to run code: templates
     see the words of the report only, and pages fetch files of that folder only.
     """
-    folder = _existing(templates or templates_folder()).absolute()
+    folder = existing_folder(templates or templates_folder()).absolute()
     look = read_look(folder)
     attached = _attached(study, results, extra_attachments)
     pages = make_pages(
@@ -103,21 +103,6 @@ def write_report(
         )
 
     return set_pages(text, shelf, attached, created=created, check_fonts=check_fonts)
-
-
-def _existing(folder: Path) -> Path:
-    """Return the folder of templates if it is one."""
-    if folder.is_dir():
-        return folder
-    what = (
-        "It is a file, not a folder" if folder.exists() else "There is no such folder"
-    )
-    raise TemplateFault(
-        where=f"templates folder, {str(folder)!r}",
-        found=f"{what}.",
-        rule="Own templates are a folder, a copy of the tool's report_templates.",
-        remedy="Correct the path, or leave the option out for the tool's own pages.",
-    )
 
 
 def _attached(
