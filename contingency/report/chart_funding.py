@@ -11,7 +11,10 @@ from contingency.report.look import Look
 
 ROW = 15.0
 """Height of a line, points."""
-HEAD = 16.0
+HEAD = 15.0
+"""Height of the line that names the parts, points."""
+GAP = 8.0
+"""Least room between two names, points."""
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -29,41 +32,47 @@ class YearBar:
 def funding_chart(bars: tuple[YearBar, ...], look: Look) -> Drawing:
     """Draw base, contingency and escalation of each year end to end.
 
-    The head names the three parts where the longest bar has them.
+    The three parts are named right above the longest bar, each where it begins.
     """
     canvas = Canvas(WIDTH, HEAD + ROW * len(bars), look)
     colours = canvas.colours
     sums = [bar.base + bar.contingency + bar.escalation for bar in bars]
     across = Scale(low=0.0, high=max(*sums, 1e-9), left=48.0, right=WIDTH - 62.0)
-    _key(canvas, across.left)
+    longest = sums.index(max(sums))
+    top = 0.0
     for place, bar in enumerate(bars):
-        y = HEAD + ROW * place
-        canvas.text((0, y + 8.0), bar.name)
+        parts = (
+            ("Base", bar.base, colours.hair),
+            ("Contingency", bar.contingency, colours.accent),
+            ("Escalation on both", bar.escalation, colours.pale),
+        )
+        if place == longest:
+            _name_parts(canvas, across, [(name, size) for name, size, _ in parts], top)
+            top += HEAD
+        canvas.text((0, top + 8.0), bar.name)
         end = 0.0
-        for amount, colour in (
-            (bar.base, colours.hair),
-            (bar.contingency, colours.accent),
-            (bar.escalation, colours.pale),
-        ):
-            canvas.bar(across(end), y, across(end + amount), y + 10.0, colour)
+        for _, amount, colour in parts:
+            canvas.bar(across(end), top, across(end + amount), top + 10.0, colour)
             end += amount
-        canvas.text((WIDTH, y + 8.0), bar.words, align="end")
-    canvas.line(
-        (across.left, HEAD - 3),
-        (across.left, HEAD + ROW * len(bars) - 2),
-        colours.rule,
-    )
+        canvas.text((WIDTH, top + 8.0), bar.words, align="end")
+        top += ROW
+    canvas.line((across.left, 0.0), (across.left, top - 2), colours.rule)
     return canvas.drawing()
 
 
-def _key(canvas: Canvas, left: float) -> None:
-    """Draw a patch and a word for each part, in the order of the bars."""
-    colours = canvas.colours
-    for word, colour in (
-        ("Base", colours.hair),
-        ("Contingency", colours.accent),
-        ("Escalation on both", colours.pale),
-    ):
-        canvas.bar(left, 1.5, left + 8.0, 8.5, colour)
-        canvas.text((left + 12.0, 8.0), word, size=SMALL, colour=colours.muted)
-        left += 12.0 + canvas.letters.width(word, SMALL, semibold=False) + 18.0
+def _name_parts(
+    canvas: Canvas, across: Scale, parts: list[tuple[str, float]], top: float
+) -> None:
+    """Write the name of each part where it begins, moved aside as little as needed."""
+    widths = [canvas.letters.width(name, SMALL, semibold=False) for name, _ in parts]
+    begins, left, end = [], across.left + 2.0, 0.0
+    for (_, size), width in zip(parts, widths, strict=True):
+        begins.append(max(across(end), left))
+        left = begins[-1] + width + GAP
+        end += size
+    right = WIDTH
+    for place in reversed(range(len(parts))):
+        begins[place] = min(begins[place], right - widths[place])
+        right = begins[place] - GAP
+    for (name, _), begin in zip(parts, begins, strict=True):
+        canvas.text((begin, top + 10.0), name, size=SMALL, colour=canvas.colours.muted)
