@@ -21,6 +21,7 @@ from contingency.estimate.nouns import (
 )
 from contingency.quantities.curves import Curves
 from contingency.quantities.dependence import (
+    factor_correlation,
     nearest_correlation,
     own_weight,
     rank_to_normal,
@@ -51,9 +52,8 @@ class Dependence:
         """Return the (v, v) correlation of the normal scores."""
         if self.root is not None:
             return np.asarray(self.root @ self.root.T)
-        joint = self.weights @ self.weights.T
-        np.fill_diagonal(joint, 1.0)
-        return np.asarray(joint)
+        # The general dependence is one of the common scores here.
+        return factor_correlation(0.0, self.weights)
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -22,7 +22,7 @@ from contingency.simulation.cost_model import CostModel, build_model
 from contingency.tracking.event_pieces import EventPiece, event_pieces
 from contingency.tracking.families import SUBSTITUTED, Family
 from contingency.tracking.matching import Match
-from contingency.tracking.moves import Moves, base_moves
+from contingency.tracking.moves import base_moves
 from contingency.tracking.package_pieces import On, PackagePiece, Side
 from contingency.tracking.scores import Draws
 
@@ -172,11 +172,6 @@ def _grouped(pieces: Sequence[PackagePiece | EventPiece]) -> tuple[Grouped, ...]
         Grouped(tuple(f for f in SUBSTITUTED if f in families), together)
         for families, together in by_families.items()
     )
-
-
-def moves_by_unit(found: Mixtures) -> Mapping[str, Moves]:
-    """Return the base moves by key of the package unit."""
-    return {piece.unit.key: piece.moves for piece in found.packages}
 
 
 def base_by_family(found: Mixtures) -> Mapping[Family, float]:
