@@ -166,7 +166,7 @@ def run_study(
     >>> from contingency import read_estimate, run_study
     >>> study = run_study(read_estimate("example_estimates/buoy-tender-refit/rev-b"))
     >>> study.target.name, f"{study.target.contingency:,.0f}"
-    ('P80', '1,654,340')
+    ('P80', '1,644,220')
     """
     model = build_model(estimate)
     comparison = None

@@ -9,8 +9,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from contingency.estimate.nouns import CostRange, Estimate, ShapeName
-from contingency.simulation.blocks import DrawnBlock, Workspace, draw_block
 from contingency.simulation.cost_model import CostModel, build_model, dependence_of
+from contingency.simulation.drawing import DrawnBlock, Workspace, draw_block
 from contingency.simulation.events import draw_events
 
 Array = NDArray[np.float64]

@@ -84,7 +84,8 @@ class BetaPert(ShapeByTails):
         place = round(_place(self.low, self.likely, self.high), _KEY_DIGITS)
         return ("pert", place), self.low, self.high - self.low
 
-    def _between_tails(self, below: Array, above: Array) -> Array:
+    def at_tails(self, below: Array, above: Array) -> Array:
+        """Return the quantile with chance `below` under it and `above` over it."""
         # Each half from its own limit: both tails keep all their digits.
         lower = below <= above
         alpha = np.where(lower, self.alpha, self.beta)
@@ -159,7 +160,8 @@ class Triangular(ShapeByTails):
         place = round(_place(self.low, self.likely, self.high), _KEY_DIGITS)
         return ("triangular", place), self.low, self.high - self.low
 
-    def _between_tails(self, below: Array, above: Array) -> Array:
+    def at_tails(self, below: Array, above: Array) -> Array:
+        """Return the quantile with chance `below` under it and `above` over it."""
         width, mode = self.high - self.low, _place(self.low, self.likely, self.high)
         return np.where(
             below <= mode,
@@ -209,7 +211,8 @@ class Uniform(ShapeByTails):
         """Return the key of the uniform on [0, 1], low and high - low."""
         return ("uniform",), self.low, self.high - self.low
 
-    def _between_tails(self, below: Array, above: Array) -> Array:
+    def at_tails(self, below: Array, above: Array) -> Array:
+        """Return the quantile with chance `below` under it and `above` over it."""
         width = self.high - self.low
         return np.where(
             below <= above, self.low + width * below, self.high - width * above

@@ -6,10 +6,11 @@ Philox-4x64-10 ([1]_).  Nothing else of numpy's generators is used, so the numbe
 do not depend on the version of a library, and adding, dropping or reordering
 inputs leaves every other input's draws as they were.
 
-Within a block each stream is stratified ([2]_): the order of the raw numbers is
-the permutation of the strata, lower bits of the same numbers are the place within
-the stratum.  ``docs/method.md``, section "Streams", describes this completely
-enough to write it again in another language.
+Within a block each stream is stratified ([2]_).  A trial has half a raw number, 32
+bits: the order of their upper 20 is the permutation of the strata, the lower 12 are
+the place within the stratum, to which one more raw number adds bits that the block's
+trials have in common.  ``docs/method.md``, section "Streams", describes this
+completely enough to write it again in another language.
 
 References
 ----------
@@ -23,7 +24,7 @@ References
 from __future__ import annotations
 
 from dataclasses import dataclass
-from functools import cache
+from functools import lru_cache
 from hashlib import blake2b
 from typing import TYPE_CHECKING, Any
 
@@ -36,16 +37,18 @@ if TYPE_CHECKING:
 
 Array = NDArray[np.float64]
 Words = NDArray[np.uint64]
+Halves = NDArray[np.uint32]
 Order = NDArray[np.int64]
 
 BLOCK = 4096
 """Trials in one Latin hypercube; a constant of the method."""
 
-_TRIALS = np.arange(BLOCK, dtype=np.uint64)
-_INDEX_MASK = np.uint64(BLOCK - 1)
-_KEEP_MASK = np.uint64(2**64 - BLOCK)
-_OFFSET_MASK = np.uint64(2**40 - 1)
-_ONE_AS_BITS = np.uint64(0x3FF0000000000000)
+_CALLS = BLOCK // 8 + 1
+"""Philox calls, of four words each, for a stratified block: half a word for each
+trial, then one word for all."""
+_TRIALS = np.arange(BLOCK, dtype=np.uint32)
+_LOW_BITS = np.uint32(BLOCK - 1)
+_ORDER_BITS = np.uint32(2**32 - BLOCK)
 
 _EXACT = 32
 """Strata at either end whose scores come from the inverse normal itself."""
@@ -54,9 +57,9 @@ _CURVED = 512
 a straight line."""
 
 
-def stream_key(seed: int, name: str, block: int) -> Words:
+def stream_key(seed: int, name: str) -> Words:
     """Return the (2,) Philox key of one stream."""
-    text = f"contingency-draws/1|{seed}|{block}|{name}"
+    text = f"contingency-draws/2|{seed}|{name}"
     digest = blake2b(text.encode("utf-8"), digest_size=16).digest()
     return np.frombuffer(digest, dtype="<u8")
 
@@ -78,57 +81,126 @@ class Source:
         self._state["uinteger"] = 0
         # The generator copies what it is given, so these two are filled anew each time.
         self._key = np.zeros(2, dtype=np.uint64)
-        self._state["state"] = {
-            "counter": np.zeros(4, dtype=np.uint64),
-            "key": self._key,
-        }
+        self._counter = np.zeros(4, dtype=np.uint64)
+        self._state["state"] = {"counter": self._counter, "key": self._key}
 
-    def raw(self, name: str, block: int) -> Words:
-        """Return the first 4,096 raw numbers of a stream, (n,) of 64-bit words."""
-        self._key[:] = stream_key(self._seed, name, block)
+    def words(self, name: str, first_call: int, calls: int) -> Words:
+        """Return raw 64-bit numbers of a stream, (calls, 4)."""
+        self._key[:] = stream_key(self._seed, name)
+        # The generator adds one before each call.
+        self._counter[0] = first_call
         self._generator.state = self._state
-        return self._generator.random_raw(BLOCK)
+        return self._generator.random_raw(4 * calls).reshape(calls, 4)
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class RawBlocks:
+    """What the strata of some streams are made from, for some blocks in a row.
+
+    Axes: ``b`` blocks, ``k`` streams, ``n`` = 4,096 trials.
+    """
+
+    halves: Halves
+    """(b, k, n) half a raw number for each trial."""
+    fine: Array
+    """(b, k, 1) what the trials of a stream have in common below their own bits:
+    inside 0 to 1."""
+
+
+def raw_blocks(source: Source, names: Sequence[str], blocks: range) -> RawBlocks:
+    """Return the raw numbers of the named streams for consecutive blocks.
+
+    Several blocks at once take fewer and longer calls, which threads share better.
+    """
+    halves = np.empty((len(blocks), len(names), BLOCK), dtype="<u4")
+    fine = np.empty((len(blocks), len(names), 1))
+    for row, name in enumerate(names):
+        words = source.words(name, blocks.start * _CALLS, len(blocks) * _CALLS)
+        words = words.reshape(len(blocks), -1)
+        # Lower half first, on every machine.
+        halves[:, row] = words.astype("<u8", copy=False).view("<u4")[:, :BLOCK]
+        fine[:, row, 0] = words[:, BLOCK // 2] >> np.uint64(36)
+    fine += 0.5
+    fine /= 2**28
+    return RawBlocks(halves=halves, fine=fine)
+
+
+class Space:
+    """Arrays in which strata and scores are made, for up to `rows` streams at once.
+
+    Fresh arrays of this size would be taken from the system and given back each time,
+    which costs as much as the arithmetic.
+    """
+
+    def __init__(self, rows: int) -> None:
+        # One piece, so that it is large enough for large pages of memory.
+        whole = np.empty((3, rows, BLOCK))
+        self.place = whole[0]
+        self.cell = whole[1].view(np.int64)
+        keys = whole[2].view(np.uint32).reshape(-1)[: rows * BLOCK]
+        self.keys = keys.reshape(rows, BLOCK)
+        self.start = (BLOCK * np.arange(rows, dtype=np.uint32))[:, None]
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
 class Strata:
-    """The Latin hypercube cells of some streams in one block.
+    """The Latin hypercube of some streams in one block.
 
-    Axes: ``k`` streams, ``n`` = 4,096 strata in rising order.
+    Axes: ``k`` streams, ``n`` = 4,096 strata in rising order.  Lives in a `Space`,
+    until that is used again.
     """
 
-    trial: Order
-    """(k, n) the trial that each stratum belongs to."""
-    offset: Array
-    """(k, n) one plus the distance of the uniform from the stratum's lower end, in
-    [1, 1 + 1/4096)."""
+    cell: Order
+    """(k, n) the trial that each stratum belongs to, counted on from row to row: row
+    times 4,096 plus trial."""
+    place: Array
+    """(k, n) how far the uniform lies above its stratum's lower end, in 4,096ths of
+    the stratum: inside 0 to 4,096."""
+
+    @property
+    def trial(self) -> Order:
+        """(k, n) the trial that each stratum belongs to."""
+        return self.cell & (BLOCK - 1)
 
 
 def strata(source: Source, names: Sequence[str], block: int) -> Strata:
     """Return the strata of the named streams in one block."""
-    words = np.empty((len(names), BLOCK), dtype=np.uint64)
-    for row, name in enumerate(names):
-        np.bitwise_and(source.raw(name, block), _KEEP_MASK, out=words[row])
-    return _strata_of(words)
+    raw = raw_blocks(source, names, range(block, block + 1))
+    return strata_of(raw.halves[0], raw.fine[0], Space(len(names)))
 
 
-def _strata_of(words: Words) -> Strata:
-    """Order the words of each row, low twelve bits cleared; `words` is workspace."""
-    # The low twelve bits make room for the trial's number: one sort of whole words
-    # then yields the permutation, two to four times as fast as an index sort.
-    np.bitwise_or(words, _TRIALS, out=words)
-    words.sort(axis=1)
-    trial = (words & _INDEX_MASK).view(np.int64)
-    # The upper 24 bits know the rank; the next 28 do not, to better than 1e-7.  As the
-    # lowest bits of a float next to one they are the offset, and nothing is converted.
-    np.bitwise_and(words, _OFFSET_MASK, out=words)
-    np.bitwise_or(words, _ONE_AS_BITS, out=words)
-    return Strata(trial=trial, offset=words.view(np.float64))
+def strata_of(halves: Halves, fine: Array, space: Space) -> Strata:
+    """Return the strata of the streams of one block.
+
+    Parameters
+    ----------
+    halves : (k, n) array
+    fine : (k, 1) array
+        As in `RawBlocks`.
+    space : Space
+        Of ``k`` rows or more.
+    """
+    rows = slice(len(halves))
+    keys, cell, place = space.keys[rows], space.cell[rows], space.place[rows]
+    # The lower bits know nothing of the order, so stratum i may as well take those of
+    # trial i: nothing has to be carried along.
+    np.bitwise_and(halves, _LOW_BITS, out=keys)
+    place[:] = keys
+    place += fine
+    # The trial's number stands where the place stood: one sort of whole numbers then
+    # yields the permutation, several times as fast as an index sort.
+    np.bitwise_and(halves, _ORDER_BITS, out=keys)
+    keys |= _TRIALS
+    keys.sort(axis=1)
+    keys &= _LOW_BITS
+    keys |= space.start[rows]
+    cell[:] = keys
+    return Strata(cell=cell, place=place)
 
 
-@cache
-def _score_polynomial() -> tuple[Array, Array, Array]:
-    """Return coefficients (n,) of a parabola in `offset` for each stratum.
+@lru_cache(maxsize=16)
+def _score_polynomial(scale: float) -> tuple[Array, Array, Array]:
+    """Return coefficients (n,) of a parabola in `place` for each stratum.
 
     Through the inverse normal at the Chebyshev nodes of the stratum: three for the
     curved strata, two (and no square) for the others.  Off by less than 2e-7 outside
@@ -140,13 +212,17 @@ def _score_polynomial() -> tuple[Array, Array, Array]:
     nodes = np.array([-1.0, 1.0]) * np.sqrt(0.125) + 0.5
     below, above = ndtri((lower[middle] + nodes[:, None]) / BLOCK)
     second[middle] = 0.0
-    first[middle] = (above - below) / (nodes[1] - nodes[0]) * BLOCK
-    constant[middle] = below - first[middle] * (1.0 + nodes[0] / BLOCK)
-    return second, first, constant
+    first[middle] = (above - below) / (nodes[1] - nodes[0]) / BLOCK
+    constant[middle] = below - first[middle] * (nodes[0] * BLOCK)
+    return scale * second, scale * first, scale * constant
+
+
+_NODES = np.cos(np.pi * (2 * np.arange(3) + 1) / 6) / 2 + 0.5
+_THROUGH_NODES = np.linalg.inv(np.vander(_NODES * BLOCK, 3))
 
 
 def parabolas(lower: Array, width: Array | float) -> tuple[Array, Array, Array]:
-    """Return parabolas in `offset` for normal scores of slices of a uniform.
+    """Return parabolas in `place` for normal scores of slices of a uniform.
 
     Parameters
     ----------
@@ -158,60 +234,62 @@ def parabolas(lower: Array, width: Array | float) -> tuple[Array, Array, Array]:
     Returns
     -------
     second, first, constant : (m,) arrays
-        ``(second * offset + first) * offset + constant`` is the normal score.
+        ``(second * place + first) * place + constant`` is the normal score.
     """
-    nodes = np.cos(np.pi * (2 * np.arange(3) + 1) / 6) / 2 + 0.5
-    values = ndtri(lower + width * nodes[:, None])  # (3, m)
-    square, slope, level = np.linalg.solve(np.vander(nodes, 3), values)
-    # From the place in the stratum, 0 to 1, to offset = 1 + place / 4096.
-    second = square * BLOCK**2
-    first = slope * BLOCK - 2.0 * second
-    constant = level - slope * BLOCK + second
+    second, first, constant = _THROUGH_NODES @ ndtri(lower + width * _NODES[:, None])
     return second, first, constant
 
 
 def scores(cells: Strata, out: Array | None = None, scale: float = 1.0) -> Array:
     """Return (k, n) stratified normal scores, times `scale`, in trial order.
 
-    Stratum i of 4,096 holds the score ``ndtri(i / 4096 + offset - 1)``.
+    The cells are used up: their places become scores.
+
+    Stratum i of 4,096 holds the score ``ndtri((i + place / 4096) / 4096)``.
     """
-    second, first, constant = (scale * c for c in _score_polynomial())
-    offset = cells.offset
-    value = offset * first
+    second, first, constant = _score_polynomial(scale)
+    value = cells.place
+    ends = [
+        (curved, second[curved] * np.square(value[:, curved]))
+        for curved in (slice(None, _CURVED), slice(-_CURVED, None))
+    ]
+    tails = [
+        (tail, scale * _tail_scores(value[:, tail], lower=tail.stop))
+        for tail in (slice(None, _EXACT), slice(-_EXACT, None))
+    ]
+    # In place: what the cache need not hold is the quickest to reach.
+    value *= first
     value += constant
-    for curved in (slice(None, _CURVED), slice(-_CURVED, None)):
-        near = offset[:, curved]
-        value[:, curved] += second[curved] * near * near
-    for tail in (slice(None, _EXACT), slice(-_EXACT, None)):
-        value[:, tail] = scale * _tail_scores(offset[:, tail], lower=tail.stop)
+    for curved, square in ends:
+        value[:, curved] += square
+    for tail, exact in tails:
+        value[:, tail] = exact
     if out is None:
         out = np.empty_like(value)
     # One assignment for all rows: a short one would hold the interpreter's lock.
-    start = np.arange(0, value.size, BLOCK)[:, None]
-    out.reshape(-1)[cells.trial + start] = value
+    out.reshape(-1)[cells.cell] = value
     return out
 
 
-def _tail_scores(offset: Array, *, lower: int | None) -> Array:
+def _tail_scores(place: Array, *, lower: int | None) -> Array:
     """Return exact scores of the outermost strata, upper ones by symmetry."""
     if lower:
-        at = np.arange(_EXACT) / BLOCK + (offset - 1.0)
-        return np.asarray(ndtri(_inside(at)))
-    above = np.arange(_EXACT, 0, -1) / BLOCK - (offset - 1.0)
-    return np.asarray(-ndtri(_inside(above)))
-
-
-def _inside(p: Array) -> Array:
-    """Keep a chance off nought: the smallest step of an offset is 2**-52."""
-    return np.maximum(p, 2.0**-54)
+        return np.asarray(ndtri(np.arange(_EXACT) / BLOCK + place / BLOCK**2))
+    above = np.arange(_EXACT, 0, -1) / BLOCK - place / BLOCK**2
+    return np.asarray(-ndtri(above))
 
 
 def uniforms(cells: Strata) -> Array:
-    """Return (k, n) stratified uniforms in [0, 1), in the order of the strata."""
-    # Both terms are whole multiples of 2**-52, so that nothing is rounded.
-    return (np.arange(BLOCK) / BLOCK - 1.0) + cells.offset
+    """Return (k, n) stratified uniforms inside 0 to 1, in the order of the strata."""
+    # Both terms are whole multiples of 2**-53, so that nothing is rounded.
+    return np.arange(BLOCK) / BLOCK + cells.place / BLOCK**2
 
 
-def plain_uniforms(words: Words) -> Array:
-    """Return unstratified uniforms in (0, 1) from the upper 52 bits of raw words."""
+def plain_uniforms(source: Source, name: str, block: int) -> Array:
+    """Return (n,) uniforms in (0, 1) that are not stratified, in trial order.
+
+    From the upper 52 bits of one raw number for each trial.
+    """
+    calls = BLOCK // 4
+    words = source.words(name, block * calls, calls).reshape(-1)
     return ((words >> np.uint64(12)).astype(np.float64) + 0.5) * 2.0**-52

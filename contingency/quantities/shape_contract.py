@@ -75,21 +75,21 @@ class ShapeByTails(Shape):
     def quantile(self, p: ArrayLike) -> Array:
         """Return the value not exceeded with chance `p` in [0, 1], same shape."""
         below = np.asarray(p, dtype=np.float64)
-        return self._between_tails(below, 1.0 - below)
+        return self.at_tails(below, 1.0 - below)
 
     def at_score(self, z: ArrayLike) -> Array:
         """Return the quantile at the standard normal score `z`, same shape."""
         score = np.asarray(z, dtype=np.float64)
-        return self._between_tails(
+        return self.at_tails(
             np.asarray(ndtr(score), dtype=np.float64),
             np.asarray(ndtr(-score), dtype=np.float64),
         )
 
     @abstractmethod
-    def _between_tails(self, below: Array, above: Array) -> Array:
+    def at_tails(self, below: Array, above: Array) -> Array:
         """Return the quantile with chance `below` under it and `above` over it.
 
-        The two add up to 1; each is exact where it is small.
+        The two have one shape and add up to 1; each is exact where it is small.
         """
 
 

@@ -1,4 +1,4 @@
-"""One block of trials: draw, add up, and keep the sums that every statistic needs.
+"""One block of trials: add up the draws, and keep the sums that every statistic needs.
 
 A block is one Latin hypercube of 4,096 trials over all inputs.  Nothing of a block
 is kept but its totals and sums of its parts, so memory does not grow with the
@@ -7,30 +7,32 @@ number of trials.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from collections.abc import Iterator
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
-from contingency.quantities.curves import STEPS_PER_SCORE
-from contingency.quantities.draws import BLOCK, Source, scores, strata
+from contingency.quantities.draws import BLOCK, scores
 from contingency.quantities.percentiles import rank
 from contingency.simulation.cost_model import CostModel
-from contingency.simulation.events import DrawnEvents, draw_events
+from contingency.simulation.drawing import (
+    TENTH_SCORE,
+    TILE,
+    Mask,
+    Workspace,
+    draw_ranges,
+    draw_systemic,
+    pattern_rows,
+)
+from contingency.simulation.events import draw_events
 
 Array = NDArray[np.float64]
-Mask = NDArray[np.bool_]
 
-TILE = 32
-"""Inputs handled in one call: long enough to leave the interpreter's lock to another
-thread, short enough for the processor's cache.  Measured: 16 gains nothing from a
-second thread, 64 falls out of the cache."""
 NEAR_RANKS = 41
 """Half-width, in ranks of a block, of the window next to the target percentile: one
 percent of the block.  A choice of ours: wide enough to average, narrow enough to be
 called near."""
-TENTH_SCORE = -1.2815515655446004
-"""Normal score of the lowest tenth, ndtri(0.1)."""
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -64,33 +66,26 @@ class BlockSums:
     cause_removal: Array
 
 
-class Workspace:
-    """Arrays that one thread uses for block after block."""
-
-    def __init__(self, model: CostModel) -> None:
-        self.source = Source(model.seed)
-        count = len(model.packages)
-        self.value = np.empty((count, BLOCK))
-        self.low = np.empty((model.varying, BLOCK), dtype=np.bool_)
-        self.high = np.empty((model.varying, BLOCK), dtype=np.bool_)
-        self.tile = np.empty((TILE, BLOCK))
-        # Fixed packages have the same value in every trial.
-        if count > model.varying:
-            rows = self.value[model.varying :]
-            model.ranges.read(np.zeros_like(rows), model.varying, rows)
+def run_blocks(
+    model: CostModel, blocks: range, work: Workspace, centre: float
+) -> Iterator[BlockSums]:
+    """Simulate blocks in a row; see `run_block`."""
+    work.fetch(blocks)
+    for block in blocks:
+        yield run_block(model, block, work, centre)
 
 
 def run_block(
     model: CostModel, block: int, work: Workspace, centre: float
 ) -> BlockSums:
     """Simulate one block.  `centre` is near the mean total, to keep sums small."""
-    uplift, uplift_low, uplift_high = _draw_systemic(model, block, work)
+    uplift, uplift_low, uplift_high = draw_systemic(model, block, work)
     factor = 1.0 + model.patterns @ uplift  # (g, n)
-    common = _draw_common(model, block, work)
-    without_cause = _draw_ranges(model, block, work, common, factor)
-    drawn = draw_events(model, block, work.source)
+    common = scores(work.cells("common", block))
+    without_cause = draw_ranges(model, block, work, common, factor)
+    drawn = draw_events(model, block, work.source, work.cells("units", block))
 
-    by_pattern = _pattern_rows(model) @ work.value  # (g, n)
+    by_pattern = pattern_rows(model) @ work.value  # (g, n)
     total = np.einsum("gn,gn->n", by_pattern, factor) + drawn.cost.sum(axis=0)
     d = total - centre
     near = _near(total, model.target)
@@ -104,9 +99,9 @@ def run_block(
         total=total,
         deviation=float(d.sum()),
         near_count=float(near.sum()),
-        ranges=work.value @ weights - model.base * weights.sum(axis=0),
+        ranges=_products(work.value, weights) - model.base * weights.sum(axis=0),
         systemic=_systemic_sums(model, work, uplift, weights),
-        events=drawn.cost @ weights,
+        events=_products(drawn.cost, weights),
         range_tails=_range_tails(work, d),
         systemic_tails=_tails(uplift_low, uplift_high, d),
         cause_tails=_tails(causes < TENTH_SCORE, causes > -TENTH_SCORE, d),
@@ -124,140 +119,6 @@ def run_block(
         event_removal=quantile - _block_quantile(total - drawn.cost, model.target),
         cause_removal=quantile - _block_quantile(total - without_cause, model.target),
     )
-
-
-@dataclass(frozen=True, kw_only=True, slots=True)
-class DrawnBlock:
-    """One block with every trial of every input kept; axes as in the cost model."""
-
-    value: Array
-    """(k, n) range values, money."""
-    uplift: Array
-    """(s, n) systemic uplifts, fractions."""
-    events: DrawnEvents
-
-    def factor(self, model: CostModel) -> Array:
-        """Return the (k, n) factor of all systemic risks on each package."""
-        return np.asarray((1.0 + model.patterns @ self.uplift)[model.pattern_of])
-
-    def total(self, model: CostModel) -> Array:
-        """Return the (n,) total cost, money."""
-        by_pattern = _pattern_rows(model) @ self.value  # (g, n)
-        factor = 1.0 + model.patterns @ self.uplift
-        estimate = np.einsum("gn,gn->n", by_pattern, factor)
-        return np.asarray(estimate + self.events.cost.sum(axis=0))
-
-
-def draw_block(model: CostModel, block: int, work: Workspace) -> DrawnBlock:
-    """Return one block trial by trial, and none of its sums: for what-if questions.
-
-    The draws are those of `run_block` to the last bit.
-    """
-    uplift, _, _ = _draw_systemic(model, block, work)
-    common = _draw_common(model, block, work)
-    factor = 1.0 + model.patterns @ uplift
-    # What each cause adds is not asked for; the common scores act all the same.
-    _draw_ranges(replace(model, causes=()), block, work, common, factor)
-    return DrawnBlock(
-        value=work.value.copy(),
-        uplift=uplift,
-        events=draw_events(model, block, work.source),
-    )
-
-
-def _draw_systemic(
-    model: CostModel, block: int, work: Workspace
-) -> tuple[Array, Mask, Mask]:
-    """Return (s, n) uplifts and whether each is in its lowest or highest tenth."""
-    names = [f"systemic/{name}" for name in model.systemic]
-    score = scores(strata(work.source, names, block))
-    low, high = score < TENTH_SCORE, score > -TENTH_SCORE
-    uplift = np.empty_like(score)
-    model.uplifts.read(score, 0, uplift)
-    return uplift, low, high
-
-
-def _draw_common(model: CostModel, block: int, work: Workspace) -> Array:
-    """Return the (f, n) common scores behind the ranges."""
-    return scores(strata(work.source, model.dependence.common, block))
-
-
-def _draw_ranges(
-    model: CostModel, block: int, work: Workspace, common: Array, factor: Array
-) -> Array:
-    """Fill `work` with the range values and their tails.
-
-    Returns (j, n): what each common cause adds to the total over its middle.
-    """
-    dependence = model.dependence
-    weights = dependence.weights
-    common = common * STEPS_PER_SCORE
-    joint = None
-    if dependence.root is not None:
-        joint = _joint_scores(model, dependence.root, block, work)
-    first_cause = weights.shape[1] - len(model.causes)
-    added = np.zeros((len(model.causes), BLOCK))
-    for first in range(0, model.varying, TILE):
-        rows = slice(first, min(first + TILE, model.varying))
-        score = work.tile[: rows.stop - rows.start]
-        if joint is None:
-            _tile_scores(model, block, work, rows, common, score)
-        else:
-            score[:] = joint[rows]
-        np.less(score, TENTH_SCORE * STEPS_PER_SCORE, out=work.low[rows])
-        np.greater(score, -TENTH_SCORE * STEPS_PER_SCORE, out=work.high[rows])
-        middle = [
-            (j, score - weights[rows, first_cause + j, None] * common[first_cause + j])
-            for j in range(len(model.causes))
-            if joint is None and weights[rows, first_cause + j].any()
-        ]
-        value = work.value[rows]
-        model.ranges.read_steps(score, first, value)
-        for j, score_without in middle:
-            without = np.empty_like(value)
-            model.ranges.read_steps(score_without, first, without)
-            np.subtract(value, without, out=without)
-            without *= factor[model.pattern_of[rows]]
-            added[j] += without.sum(axis=0)
-    return added
-
-
-def _tile_scores(
-    model: CostModel,
-    block: int,
-    work: Workspace,
-    rows: slice,
-    common: Array,
-    score: Array,
-) -> None:
-    """Fill (r, n) `score` with the scores of some ranges, counted in grid steps."""
-    dependence = model.dependence
-    weights = dependence.weights[rows]
-    cells = strata(work.source, model.streams[rows], block)
-    own = dependence.own[rows, 0]
-    if np.all(own == own[0]):
-        # Without loads all ranges have one weight: it goes into the polynomials.
-        scores(cells, out=score, scale=float(own[0]) * STEPS_PER_SCORE)
-    else:
-        scores(cells, out=score, scale=STEPS_PER_SCORE)
-        score *= dependence.own[rows]
-    if weights.shape[1] == 1 and np.all(weights == weights[0]):
-        score += weights[0] * common
-    elif weights.shape[1]:
-        score += weights @ common
-
-
-def _joint_scores(model: CostModel, root: Array, block: int, work: Workspace) -> Array:
-    """Return (v, n) scores under given pairs of correlations, in grid steps."""
-    own = scores(strata(work.source, model.streams, block), scale=STEPS_PER_SCORE)
-    return np.asarray(root @ own)
-
-
-def _pattern_rows(model: CostModel) -> Array:
-    """Return (g, k) ones where a package has the pattern."""
-    count = model.patterns.shape[0]
-    rows = np.arange(count)[:, None] == model.pattern_of
-    return np.asarray(rows, dtype=np.float64)
 
 
 def _cost_under(model: CostModel, by_pattern: Array) -> Array:
@@ -294,10 +155,19 @@ def _systemic_sums(
     return np.where(model.acts[:, :, None], sums, 0.0)
 
 
+def _products(rows: Array, columns: Array) -> Array:
+    """Return (r, c) sums over the trials of (r, n) rows times (n, c) columns.
+
+    Column by column: a product with few columns is slower than as many with one.
+    """
+    return np.stack([rows @ column for column in columns.T.copy()], axis=1)
+
+
 def _tails(low: Mask, high: Mask, d: Array) -> Array:
     """Return (r, 4): sum of `d` and count where low, then where high."""
+    both = np.stack([d, np.ones(BLOCK)], axis=1)
     below, above = low.astype(np.float64), high.astype(np.float64)
-    return np.column_stack([below @ d, below.sum(axis=1), above @ d, above.sum(axis=1)])
+    return np.hstack([_products(below, both), _products(above, both)])
 
 
 def _range_tails(work: Workspace, d: Array) -> Array:
@@ -309,9 +179,9 @@ def _range_tails(work: Workspace, d: Array) -> Array:
         count = work.low[rows].shape[0]
         as_number = work.tile[:count]
         as_number[:] = work.low[rows]
-        result[rows.start : rows.start + count, 0:2] = as_number @ both
+        result[rows.start : rows.start + count, 0:2] = _products(as_number, both)
         as_number[:] = work.high[rows]
-        result[rows.start : rows.start + count, 2:4] = as_number @ both
+        result[rows.start : rows.start + count, 2:4] = _products(as_number, both)
     return result
 
 

@@ -14,8 +14,9 @@ from typing import Any
 from threadpoolctl import threadpool_limits
 
 from contingency.errors import ClusterUnavailable
-from contingency.simulation.blocks import BlockSums, Workspace, run_block
+from contingency.simulation.blocks import BlockSums, run_block
 from contingency.simulation.cost_model import CostModel
+from contingency.simulation.drawing import Workspace
 from contingency.simulation.engine import BlockRunner
 
 HERE = "dask"

@@ -84,12 +84,16 @@ class Places:
 
     cell: NDArray[np.int64]
     """(m,) place in the (units, 4096) strata laid flat."""
-    event: NDArray[np.int64]
-    """(m,) row of the event."""
+    shift: NDArray[np.int64]
+    """(m,) from the unit's row of trials to the event's, both laid flat."""
+    curve: NDArray[np.int64]
+    """(m,) row in the impact curves."""
+    sign: Array
+    """(m,) +1 for a threat, -1 for an opportunity."""
     second: Array
     first: Array
     constant: Array
-    """(m,) parabolas in the stratum's offset for the score of the impact."""
+    """(m,) parabolas in the place within the stratum for the score of the impact."""
     exact: NDArray[np.int64]
     """(x,) which of the m."""
     exact_lower: Array
@@ -177,6 +181,7 @@ def build_model(estimate: Estimate) -> CostModel:
     impacts = Curves([e.impact_used.distribution for e in events])
     impact_row = np.empty(len(events), dtype=np.int64)
     impact_row[list(impacts.order)] = np.arange(len(events))
+    signs = np.array([float(event.sign) for event in events])
     units, repeated = _units(events)
     parents = _parents(events)
     return CostModel(
@@ -201,9 +206,9 @@ def build_model(estimate: Estimate) -> CostModel:
         event_place=_places(estimate.open_events, events),
         impacts=impacts,
         impact_row=impact_row,
-        signs=np.array([event.sign for event in events]),
+        signs=signs,
         units=units,
-        places=_places_of(units, impact_row),
+        places=_places_of(units, impact_row, signs),
         repeated=repeated,
         parents=parents,
         event_order=_parents_first(parents),
@@ -344,7 +349,9 @@ EXACT_STRATA = 32
 """Strata at either end of an event's slice that take no parabola."""
 
 
-def _places_of(units: tuple[Unit, ...], impact_row: NDArray[np.int64]) -> Places:
+def _places_of(
+    units: tuple[Unit, ...], impact_row: NDArray[np.int64], signs: Array
+) -> Places:
     """Return where the events happen, sorted by impact curve and stratum."""
     parts = [
         _slice_of(unit, member)
@@ -366,9 +373,12 @@ def _places_of(units: tuple[Unit, ...], impact_row: NDArray[np.int64]) -> Places
         second[curved], first[curved], constant[curved] = parabolas(
             lowers[curved] / widths[curved], width
         )
+    cell, event = cells.astype(np.int64), events.astype(np.int64)
     return Places(
-        cell=cells.astype(np.int64),
-        event=events.astype(np.int64),
+        cell=cell,
+        shift=BLOCK * (event - cell // BLOCK),
+        curve=impact_row[event],
+        sign=signs[event],
         second=second,
         first=first,
         constant=constant,

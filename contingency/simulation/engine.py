@@ -14,8 +14,9 @@ from threadpoolctl import threadpool_limits
 from contingency.estimate.nouns import Estimate
 from contingency.quantities.draws import BLOCK
 from contingency.quantities.percentiles import block_interval
-from contingency.simulation.blocks import BlockSums, Workspace, run_block
+from contingency.simulation.blocks import BlockSums, run_blocks
 from contingency.simulation.cost_model import CostModel, build_model
+from contingency.simulation.drawing import Workspace, chunks
 from contingency.simulation.exact import exact_mean
 from contingency.simulation.result import Simulation
 
@@ -91,20 +92,22 @@ def _local_runner(threads: int) -> BlockRunner:
     """Return a runner that uses threads of this process."""
 
     def run(model: CostModel, centre: float, blocks: range) -> Iterator[BlockSums]:
-        if threads <= 1 or len(blocks) <= 1:
+        pieces = chunks(model, blocks, threads)
+        if threads <= 1 or len(pieces) <= 1:
             work = Workspace(model)
-            for block in blocks:
-                yield run_block(model, block, work, centre)
+            for piece in pieces:
+                yield from run_blocks(model, piece, work, centre)
             return
         own = local()
 
-        def one(block: int) -> BlockSums:
+        def one(piece: range) -> list[BlockSums]:
             if not hasattr(own, "work"):
                 own.work = Workspace(model)
-            return run_block(model, block, own.work, centre)
+            return list(run_blocks(model, piece, own.work, centre))
 
         with ThreadPoolExecutor(max_workers=threads) as pool:
-            yield from pool.map(one, blocks)
+            for sums in pool.map(one, pieces):
+                yield from sums
 
     return run
 

@@ -17,6 +17,7 @@ from scipy.special import ndtri
 from contingency.quantities.draws import (
     BLOCK,
     Source,
+    Strata,
     plain_uniforms,
     strata,
     uniforms,
@@ -38,14 +39,23 @@ class DrawnEvents:
     """(e, n)"""
 
 
-def draw_events(model: CostModel, block: int, source: Source) -> DrawnEvents:
-    """Return the events of one block in the order of the model."""
+def draw_events(
+    model: CostModel, block: int, source: Source, cells: Strata | None = None
+) -> DrawnEvents:
+    """Return the events of one block in the order of the model.
+
+    `cells` are the strata of the model's units, where they have been drawn already.
+    """
+    if cells is None:
+        cells = strata(source, [unit.stream for unit in model.units], block)
     count = len(model.events)
     drawn = DrawnEvents(
         cost=np.zeros((count, BLOCK)), occurs=np.zeros((count, BLOCK), dtype=np.bool_)
     )
-    event, trial, score = _happenings(model, block, source)
-    drawn.occurs[event, trial] = True
+    happens = _happenings(model, cells)
+    # Laid flat, for an assignment by one index is much faster than by two.
+    occurs, cost = drawn.occurs.reshape(-1), drawn.cost.reshape(-1)
+    occurs[happens.at] = True
     repeated = {r.event: r for r in model.repeated}
     for row in model.event_order:
         parent = model.parents[row]
@@ -55,39 +65,58 @@ def draw_events(model: CostModel, block: int, source: Source) -> DrawnEvents:
         elif allowed is not None:
             drawn.occurs[row] &= allowed
     if any(parent is not None for parent in model.parents):
-        kept = drawn.occurs[event, trial]
-        event, trial, score = event[kept], trial[kept], score[kept]
-    cost = np.empty_like(score)
-    model.impacts.read_each(score, model.impact_row[event], cost)
-    cost *= model.signs[event]
-    drawn.cost[event, trial] = cost
+        happens = happens.where(occurs[happens.at])
+    impact = np.empty_like(happens.score)
+    model.impacts.read_each(happens.score, happens.curve, impact)
+    impact *= happens.sign
+    cost[happens.at] = impact
     return drawn
 
 
-def _happenings(
-    model: CostModel, block: int, source: Source
-) -> tuple[NDArray[np.int64], NDArray[np.int64], Array]:
-    """Return event, trial and impact score wherever an event's own choice comes out.
+@dataclass(frozen=True, kw_only=True, slots=True)
+class _Happenings:
+    """Where an event's own choice comes out: ``m`` of them, by impact curve."""
 
-    One (m,) array each, in the order of the impact curves; parents are put aside.
-    """
-    cells = strata(source, [unit.stream for unit in model.units], block)
+    at: NDArray[np.int64]
+    """(m,) event times 4,096 plus trial."""
+    curve: NDArray[np.int64]
+    """(m,) row of the impact curve, rising."""
+    sign: Array
+    """(m,) +1 for a threat, -1 for an opportunity."""
+    score: Array
+    """(m,) normal score of the impact."""
+
+    def where(self, kept: NDArray[np.bool_]) -> _Happenings:
+        """Return some of them."""
+        return _Happenings(
+            at=self.at[kept],
+            curve=self.curve[kept],
+            sign=self.sign[kept],
+            score=self.score[kept],
+        )
+
+
+def _happenings(model: CostModel, cells: Strata) -> _Happenings:
+    """Return what the events' own strata say; parents are put aside."""
     places = model.places
-    offset = cells.offset.reshape(-1)[places.cell]
-    trial = cells.trial.reshape(-1)[places.cell]
-    score = places.second * offset
+    at = cells.cell.reshape(-1)[places.cell]
+    at += places.shift
+    place = cells.place.reshape(-1)[places.cell]
+    score = places.second * place
     score += places.first
-    score *= offset
+    score *= place
     score += places.constant
-    at = (places.exact_lower + (offset[places.exact] - 1.0)) / places.exact_width
-    score[places.exact] = ndtri(np.clip(at, _SMALLEST, 1.0 - _SMALLEST))
-    inside = (at >= 0.0) & (at < 1.0)
+    inner = places.exact_lower + place[places.exact] / BLOCK**2
+    inner /= places.exact_width
+    score[places.exact] = ndtri(np.clip(inner, _SMALLEST, 1.0 - _SMALLEST))
+    happens = _Happenings(at=at, curve=places.curve, sign=places.sign, score=score)
+    inside = (inner >= 0.0) & (inner < 1.0)
     if inside.all():
-        return places.event, trial, score
+        return happens
     # A stratum that the probability cuts in two belongs to the event in part only.
     kept = np.ones(score.size, dtype=np.bool_)
     kept[places.exact] = inside
-    return places.event[kept], trial[kept], score[kept]
+    return happens.where(kept)
 
 
 def _repeat(
@@ -102,7 +131,7 @@ def _repeat(
     event = repeated.event
     cells = strata(source, [repeated.stream], block)
     times = np.empty(BLOCK, dtype=np.int64)
-    times[cells.trial[0]] = np.searchsorted(
+    times[cells.cell[0]] = np.searchsorted(
         repeated.chances, uniforms(cells)[0], side="right"
     )
     if allowed is not None:
@@ -110,7 +139,7 @@ def _repeat(
     drawn.occurs[event] = times > 0
     for turn in range(1, int(times.max()) + 1):
         trials = np.flatnonzero(times >= turn)
-        place = plain_uniforms(source.raw(f"{repeated.stream}/{turn}", block))
+        place = plain_uniforms(source, f"{repeated.stream}/{turn}", block)
         score = np.asarray(ndtri(place[trials]))
         cost = np.empty_like(score)
         row = np.full(trials.size, model.impact_row[event])

@@ -17,8 +17,8 @@ from threadpoolctl import threadpool_limits
 from contingency.estimate.nouns import Estimate
 from contingency.quantities.curves import Curves
 from contingency.quantities.draws import BLOCK, Source, scores, strata
-from contingency.simulation.blocks import DrawnBlock, Workspace, draw_block
 from contingency.simulation.cost_model import CostModel, build_model
+from contingency.simulation.drawing import DrawnBlock, Workspace, draw_block
 from contingency.simulation.spending import Spending, SpendingPlan, price_mix
 
 Array = NDArray[np.float64]

@@ -12,8 +12,8 @@ from threadpoolctl import threadpool_limits
 from contingency.estimate.nouns import Estimate
 from contingency.quantities.draws import BLOCK
 from contingency.quantities.percentiles import block_interval
-from contingency.simulation.blocks import Workspace, draw_block
 from contingency.simulation.cost_model import CostModel, build_model
+from contingency.simulation.drawing import Workspace, draw_block
 from contingency.simulation.engine import GROWTH
 
 Array = NDArray[np.float64]

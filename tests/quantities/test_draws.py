@@ -16,6 +16,7 @@ from contingency.quantities.draws import (
     BLOCK,
     Source,
     plain_uniforms,
+    raw_blocks,
     scores,
     strata,
     uniforms,
@@ -39,49 +40,76 @@ def philox(key, counter):
     return x0, x1, x2, x3
 
 
-def plain_words(seed, name, block, count):
-    """The raw words of a stream, from docs/method.md and nothing else."""
-    text = f"contingency-draws/1|{seed}|{block}|{name}".encode()
-    digest = blake2b(text, digest_size=16).digest()
+def plain_words(seed, name, calls):
+    """The raw words of some calls of a stream, from docs/method.md and nothing else."""
+    digest = blake2b(f"contingency-draws/2|{seed}|{name}".encode(), digest_size=16)
+    digest = digest.digest()
     key = (
         int.from_bytes(digest[:8], "little"),
         int.from_bytes(digest[8:], "little"),
     )
-    words = []
-    for call in range(1, -(-count // 4) + 1):
-        words += philox(key, (call, 0, 0, 0))
-    return words[:count]
+    return [word for call in calls for word in philox(key, (call, 0, 0, 0))]
 
 
-def plain_scores(seed, name, block):
-    """The stratified normal scores of a stream in trial order, in plain numbers."""
-    words = plain_words(seed, name, block, BLOCK)
-    order = sorted(range(BLOCK), key=lambda trial: (words[trial] >> 12, trial))
-    inverse = NormalDist().inv_cdf
-    drawn = [0.0] * BLOCK
+def plain_uniforms_of(seed, name, block):
+    """The stratified uniforms of a stream in trial order, as whole numbers of 2^-53."""
+    words = plain_words(seed, name, range(513 * block + 1, 513 * block + 514))
+    halves = [half for word in words[:2048] for half in (word % 2**32, word >> 32)]
+    order = sorted(range(BLOCK), key=lambda trial: (halves[trial] >> 12, trial))
+    common = words[2048] >> 36
+    drawn = [0] * BLOCK
     for stratum, trial in enumerate(order):
-        # Bits 12 to 39 of the word, then the trial's number, make the place.
-        bits = (words[trial] & 0xFFFFFFF000 | trial) & (2**40 - 1)
-        place = bits / 2**40
-        p = max((stratum + place) / BLOCK, 2.0**-54)
-        drawn[trial] = inverse(p)
+        low = halves[stratum] % 4096
+        drawn[trial] = ((stratum * 4096 + low) * 2**28 + common) * 2 + 1
     return drawn
 
 
 @pytest.mark.parametrize("name", NAMES)
 def test_plain_integers_give_the_same_words(name):
     """Philox written out in Python integers, keyed as the documentation says."""
-    raw = Source(20260401).raw(name, 3)
+    raw = Source(20260401).words(name, 7, 16)
 
-    assert raw[:64].tolist() == plain_words(20260401, name, 3, 64)
+    assert raw.ravel().tolist() == plain_words(20260401, name, range(8, 24))
+
+
+@pytest.mark.parametrize("block", [0, 5])
+@pytest.mark.parametrize("name", NAMES)
+def test_plain_numbers_give_the_same_uniforms(name, block):
+    """The whole way from a name to uniforms, to the last bit."""
+    cells = strata(Source(7), [name], block)
+    ours = np.empty(BLOCK)
+    ours[cells.trial[0]] = uniforms(cells)[0]
+
+    assert (ours * 2.0**53).tolist() == plain_uniforms_of(7, name, block)
 
 
 @pytest.mark.parametrize("name", NAMES)
 def test_plain_numbers_give_the_same_scores(name):
-    """The whole way from a name to normal scores, written again from the method."""
+    """And from there to normal scores, with the inverse normal of Python itself."""
     ours = scores(strata(Source(7), [name], 0))[0]
+    inverse = NormalDist().inv_cdf
+    plain = [inverse(u / 2**53) for u in plain_uniforms_of(7, name, 0)]
 
-    assert ours == pytest.approx(plain_scores(7, name, 0), abs=2e-7)
+    assert ours == pytest.approx(plain, abs=2e-7)
+
+
+def test_plain_numbers_give_the_same_uniforms_without_strata():
+    """The impacts of repeated events: the upper 52 bits of one word for each trial."""
+    words = plain_words(7, "event/R7/1", range(1024 * 3 + 1, 1024 * 3 + 1025))
+    plain = [((word >> 12) + 0.5) / 2**52 for word in words]
+
+    assert plain_uniforms(Source(7), "event/R7/1", 3).tolist() == plain
+
+
+def test_several_blocks_at_once_are_the_same():
+    """Drawn in one call or block by block."""
+    source = Source(5)
+    together = raw_blocks(source, NAMES, range(2, 6))
+
+    for i, block in enumerate(range(2, 6)):
+        alone = raw_blocks(source, NAMES, range(block, block + 1))
+        assert np.array_equal(together.halves[i], alone.halves[0])
+        assert np.array_equal(together.fine[i], alone.fine[0])
 
 
 def test_the_first_draws_are_those_of_the_golden_file():
@@ -89,7 +117,9 @@ def test_the_first_draws_are_those_of_the_golden_file():
     source = Source(1)
     found = {
         name: {
-            "words": [f"{word:016x}" for word in source.raw(name, 0)[:8].tolist()],
+            "words": [
+                f"{word:016x}" for word in source.words(name, 0, 2).ravel().tolist()
+            ],
             "scores": [
                 f"{score:.9f}" for score in scores(strata(source, [name], 0))[0][:8]
             ],
@@ -104,7 +134,7 @@ def test_a_new_process_draws_the_same():
     """Same seed, same numbers, whatever the hash seed of the process."""
     code = (
         "from contingency.quantities.draws import Source;"
-        "print(Source(0).raw('range/P1', 0)[:4].tolist())"
+        "print(Source(0).words('range/P1', 0, 1).tolist())"
     )
     printed = [
         subprocess.run(
@@ -117,7 +147,7 @@ def test_a_new_process_draws_the_same():
         for seed in ("1", "2")
     ]
 
-    assert printed[0] == printed[1] == f"{Source(0).raw('range/P1', 0)[:4].tolist()}\n"
+    assert printed[0] == printed[1] == f"{Source(0).words('range/P1', 0, 1).tolist()}\n"
 
 
 def test_every_stratum_holds_one_draw():
@@ -142,7 +172,7 @@ def test_scores_are_the_inverse_normal_of_the_uniforms():
 def test_the_place_within_the_outermost_stratum_is_uniform():
     """Where the order of the words could leak into the place, it does not."""
     places = [
-        (strata(Source(seed), ["x"], block).offset[0, [0, -1]] - 1.0) * BLOCK
+        strata(Source(seed), ["x"], block).place[0, [0, -1]] / BLOCK
         for seed in range(40)
         for block in range(10)
     ]
@@ -161,8 +191,34 @@ def test_two_streams_are_not_correlated():
     assert np.square(correlation).mean() * BLOCK == pytest.approx(1.0, abs=0.2)
 
 
-def test_plain_uniforms_stay_inside():
-    """Neither nought nor one, whatever the word."""
-    words = np.array([0, 2**64 - 1], dtype=np.uint64)
+def test_the_place_knows_nothing_of_the_order():
+    """Neither of the trial that has the stratum, nor of the place next to it."""
+    cells = strata(Source(11), [f"x{i}" for i in range(200)], 0)
+    place = cells.place - cells.place.mean(axis=1, keepdims=True)
 
-    assert np.all((plain_uniforms(words) > 0.0) & (plain_uniforms(words) < 1.0))
+    for other in (cells.trial - 2047.5, np.roll(place, 1, axis=1)):
+        found = (place * other).mean() / (place.std() * other.std())
+        assert abs(found) < 4 / np.sqrt(place.size)
+
+
+class Extreme:
+    """A source whose every word is the same."""
+
+    def __init__(self, word):
+        self.word = word
+
+    def words(self, name, first_call, calls):
+        """As `Source.words`."""
+        del name, first_call
+        return np.full((calls, 4), self.word, dtype=np.uint64)
+
+
+@pytest.mark.parametrize("word", [0, 2**64 - 1])
+def test_uniforms_stay_inside(word):
+    """Neither nought nor one, whatever the words; nor is a score without end."""
+    source = Extreme(word)
+    cells = strata(source, ["x"], 0)
+
+    for u in (uniforms(cells), plain_uniforms(source, "x", 0)):
+        assert np.all((u > 0.0) & (u < 1.0))
+    assert np.all(np.abs(scores(cells)) < 8.3)

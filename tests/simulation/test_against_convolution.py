@@ -27,8 +27,25 @@ IMPACTS = {
 }
 
 
-def standard_errors_off(result, exact):
-    """How many of its own standard errors each of P05 to P95 is from the exact one."""
+SEEDS = (1, 2, 3)
+"""One draw in 370 is beyond three standard errors, and each model has 19 percentiles:
+the middle of three runs is what must be within."""
+
+
+def standard_errors_off(model, exact):
+    """How many of its own standard errors each of P05 to P95 is from the exact one.
+
+    The middle one of three runs under different seeds.
+    """
+    return np.median([_off(simulate(with_seed(model, s)), exact) for s in SEEDS], 0)
+
+
+def with_seed(model, seed):
+    """The same estimate under another seed."""
+    return model.model_copy(update={"run": model.run.model_copy(update={"seed": seed})})
+
+
+def _off(result, exact):
     blocks = result.total.reshape(result.blocks, result.block)
     quantile_of_t = stdtrit(result.blocks - 1, 0.975)
     off = []
@@ -58,11 +75,11 @@ def test_independent_ranges(names):
     """Sums of ranges of several shapes."""
     ranges = [RANGES[name] for name in names]
     model = estimate(
-        [package(n, r) for n, r in zip(names, ranges, strict=True)], trials=2**18
+        [package(n, r) for n, r in zip(names, ranges, strict=True)], trials=2**17
     )
     shapes = [r.distribution for r in ranges]
     exact = exact_total(shapes, low=0.0, high=2000.0)
-    good, off = held(standard_errors_off(simulate(model), exact))
+    good, off = held(standard_errors_off(model, exact))
 
     assert good, off
 
@@ -78,7 +95,7 @@ def test_ranges_and_events():
     model = estimate(
         [package("A", RANGES["pert"]), package("B", RANGES["lognormal"])],
         events,
-        trials=2**18,
+        trials=2**17,
     )
     shape = {name: r.distribution for name, r in (RANGES | IMPACTS).items()}
     exact = exact_total(
@@ -92,7 +109,7 @@ def test_ranges_and_events():
         low=0.0,
         high=2000.0,
     )
-    good, off = held(standard_errors_off(simulate(model), exact))
+    good, off = held(standard_errors_off(model, exact))
 
     assert good, off
 
@@ -104,10 +121,10 @@ def test_ranges_joined_by_one_factor(general):
     model = estimate(
         [package(name, RANGES[name]) for name in names],
         general_dependence=general,
-        trials=2**18,
+        trials=2**17,
     )
     shapes = [RANGES[name].distribution for name in names]
     exact = exact_one_factor(shapes, general, low=0.0, high=1500.0)
-    good, off = held(standard_errors_off(simulate(model), exact))
+    good, off = held(standard_errors_off(model, exact))
 
     assert good, off

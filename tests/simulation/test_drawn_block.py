@@ -4,8 +4,9 @@ import numpy as np
 import pytest
 
 from contingency.estimate.nouns import Load
-from contingency.simulation.blocks import Workspace, draw_block, run_block
+from contingency.simulation.blocks import run_block
 from contingency.simulation.cost_model import build_model
+from contingency.simulation.drawing import Workspace, draw_block
 from tests.assurance.builder import PACKAGES, cause, sound_estimate
 
 

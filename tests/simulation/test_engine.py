@@ -9,8 +9,9 @@ from scipy.stats import spearmanr
 from contingency.estimate.nouns import Run
 from contingency.quantities.draws import BLOCK
 from contingency.simulation import simulate
-from contingency.simulation.blocks import Workspace, run_block
+from contingency.simulation.blocks import run_block
 from contingency.simulation.cost_model import build_model
+from contingency.simulation.drawing import Workspace
 from tests.simulation.estimates import (
     a_bit_of_everything,
     cause,
