@@ -23,7 +23,7 @@ from contingency.setting.levels import FundingLevel
 from contingency.version import VERSION
 
 FORMAT = "contingency-results/1"
-METHOD = "contingency-method/1"
+METHOD = "contingency-method/2"
 DIGITS = 12
 """Significant digits of a figure.  The last four of a float depend on the order in
 which a processor adds, and say nothing about money."""

@@ -123,7 +123,7 @@ def test_the_context_of_the_refit_is_the_golden_one(refit, look, golden):
     """Every word and every figure that the templates may show."""
     results = {
         "tool": {"name": "contingency", "version": "1.2.3"},
-        "run": {"method": "contingency-method/1"},
+        "run": {"method": "contingency-method/2"},
     }
     files = {
         "packages.csv": ("Input file of the estimate", b"id,name\n"),
