@@ -18,12 +18,12 @@ from contingency.quantities.percentiles import rank
 from contingency.simulation.cost_model import CostModel
 from contingency.simulation.drawing import (
     TENTH_SCORE,
-    TILE,
     Mask,
     Workspace,
     draw_ranges,
     draw_systemic,
     pattern_rows,
+    tiles,
 )
 from contingency.simulation.events import draw_events
 
@@ -94,15 +94,16 @@ def run_block(
     acting_cost = _cost_under(model, by_pattern)  # (s, n)
     causes = common[len(common) - len(model.causes) :] if model.causes else common[:0]
     occurs = drawn.occurs.astype(np.float64)
-    weights = np.stack([np.ones(BLOCK), d, near], axis=1)  # (n, 3)
+    weights = np.stack([np.ones(BLOCK), d, near])  # (3, n)
+    ranges = _range_sums(model, work, uplift, factor, total, weights)
     return BlockSums(
         total=total,
         deviation=float(d.sum()),
         near_count=float(near.sum()),
-        ranges=_products(work.value, weights) - model.base * weights.sum(axis=0),
-        systemic=_systemic_sums(model, work, uplift, weights),
+        ranges=ranges.parts - model.base * weights.sum(axis=1),
+        systemic=ranges.systemic,
         events=_products(drawn.cost, weights),
-        range_tails=_range_tails(work, d),
+        range_tails=ranges.tails,
         systemic_tails=_tails(uplift_low, uplift_high, d),
         cause_tails=_tails(causes < TENTH_SCORE, causes > -TENTH_SCORE, d),
         event_tails=np.column_stack(
@@ -113,7 +114,7 @@ def run_block(
                 occurs.sum(axis=1),
             ]
         ),
-        range_removal=quantile - _without_ranges(model, work, total, factor),
+        range_removal=quantile - ranges.without,
         systemic_removal=quantile
         - _block_quantile(total - uplift * acting_cost, model.target),
         event_removal=quantile - _block_quantile(total - drawn.cost, model.target),
@@ -142,68 +143,92 @@ def _block_quantile(total: Array, target: int) -> Array:
     return np.asarray(np.partition(total, place, axis=1)[:, place])
 
 
-def _systemic_sums(
-    model: CostModel, work: Workspace, uplift: Array, weights: Array
-) -> Array:
-    """Return (k, s, 3) sums of range value times uplift."""
-    risks = len(model.systemic)
-    if not risks:
-        return np.zeros((len(model.packages), 0, 3))
+@dataclass(frozen=True, kw_only=True, slots=True)
+class _RangeSums:
+    """What is summed over the trials of each range."""
+
+    parts: Array
+    """(k, 3) range value: alone, times d, near the target."""
+    systemic: Array
+    """(k, s, 3) the same of range value times uplift."""
+    tails: Array
+    """(k, 4) as in `BlockSums`; a fixed package has empty ones."""
+    without: Array
+    """(k,) the block's target percentile with the range fixed at its base."""
+
+
+def _range_sums(
+    model: CostModel,
+    work: Workspace,
+    uplift: Array,
+    factor: Array,
+    total: Array,
+    weights: Array,
+) -> _RangeSums:
+    """Return every sum over the ranges, tile by tile: values are read once."""
+    count, risks = len(model.packages), len(model.systemic)
+    sums = _RangeSums(
+        parts=np.empty((count, 3)),
+        systemic=np.zeros((count, risks, 3)),
+        tails=np.zeros((count, 4)),
+        without=np.empty(count),
+    )
     # (n, s, 3) -> (n, 3 s): one matrix product for all risks and weights
-    columns = (uplift.T[:, :, None] * weights[:, None, :]).reshape(BLOCK, 3 * risks)
-    sums = (work.value @ columns).reshape(-1, risks, 3)
-    return np.where(model.acts[:, :, None], sums, 0.0)
+    columns = uplift.T[:, :, None] * weights.T[:, None, :]
+    columns = columns.reshape(BLOCK, 3 * risks)
+    for rows in tiles(count):
+        value = work.value[rows]
+        sums.parts[rows] = _products(value, weights)
+        if risks:
+            sums.systemic[rows] = (value @ columns).reshape(-1, risks, 3)
+        sums.without[rows] = _without(model, work, rows, total, factor)
+        varying = slice(rows.start, min(rows.stop, model.varying))
+        if varying.start < varying.stop:
+            sums.tails[varying] = _range_tails(work, varying, weights)
+    sums.systemic[~model.acts] = 0.0
+    return sums
 
 
 def _products(rows: Array, columns: Array) -> Array:
-    """Return (r, c) sums over the trials of (r, n) rows times (n, c) columns.
+    """Return (r, c) sums over the trials of (r, n) rows times (c, n) columns.
 
     Column by column: a product with few columns is slower than as many with one.
     """
-    return np.stack([rows @ column for column in columns.T.copy()], axis=1)
+    return np.stack([rows @ column for column in columns], axis=1)
 
 
 def _tails(low: Mask, high: Mask, d: Array) -> Array:
     """Return (r, 4): sum of `d` and count where low, then where high."""
-    both = np.stack([d, np.ones(BLOCK)], axis=1)
+    both = np.stack([d, np.ones(BLOCK)])
     below, above = low.astype(np.float64), high.astype(np.float64)
     return np.hstack([_products(below, both), _products(above, both)])
 
 
-def _range_tails(work: Workspace, d: Array) -> Array:
-    """Return (k, 4) tails of the ranges; a fixed package has empty ones."""
-    result = np.zeros((work.value.shape[0], 4))
-    both = np.stack([d, np.ones(BLOCK)], axis=1)
-    for first in range(0, work.low.shape[0], TILE):
-        rows = slice(first, first + TILE)
-        count = work.low[rows].shape[0]
-        as_number = work.tile[:count]
-        as_number[:] = work.low[rows]
-        result[rows.start : rows.start + count, 0:2] = _products(as_number, both)
-        as_number[:] = work.high[rows]
-        result[rows.start : rows.start + count, 2:4] = _products(as_number, both)
-    return result
+def _range_tails(work: Workspace, rows: slice, weights: Array) -> Array:
+    """Return (r, 4) tails of some varying ranges."""
+    both = weights[1::-1]
+    as_number = work.tile[: rows.stop - rows.start]
+    sides = []
+    for side in (work.low, work.high):
+        as_number[:] = side[rows]
+        sides.append(_products(as_number, both))
+    return np.hstack(sides)
 
 
-def _without_ranges(
-    model: CostModel, work: Workspace, total: Array, factor: Array
+def _without(
+    model: CostModel, work: Workspace, rows: slice, total: Array, factor: Array
 ) -> Array:
-    """Return (k,) the target percentile with each range fixed at its base."""
-    result = np.empty(len(model.packages))
-    for first in range(0, len(model.packages), TILE):
-        rows = slice(first, first + TILE)
-        value = work.value[rows]
-        moved = work.tile[: value.shape[0]]
-        if not model.systemic:
-            # The base is the same in every trial: it comes back after the ranking.
-            np.subtract(total, value, out=moved)
-        else:
-            np.subtract(value, model.base[rows], out=moved)
-            moved *= factor[model.pattern_of[rows]]
-            np.subtract(total, moved, out=moved)
-        place = rank(BLOCK, model.target) - 1
-        moved.partition(place, axis=1)
-        result[first : first + value.shape[0]] = moved[:, place]
+    """Return (r,) the target percentile with each of some ranges at its base."""
+    value = work.value[rows]
+    moved = work.tile[: value.shape[0]]
+    place = rank(BLOCK, model.target) - 1
     if not model.systemic:
-        result += model.base[:, 0]
-    return result
+        # The base is the same in every trial: it comes back after the ranking.
+        np.subtract(total, value, out=moved)
+        moved.partition(place, axis=1)
+        return np.asarray(moved[:, place] + model.base[rows, 0])
+    np.subtract(value, model.base[rows], out=moved)
+    moved *= factor[model.pattern_of[rows]]
+    np.subtract(total, moved, out=moved)
+    moved.partition(place, axis=1)
+    return moved[:, place].copy()
