@@ -24,10 +24,10 @@ from contingency.simulation.events import DrawnEvents, draw_events
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 
-TILE = 100
+TILE = 64
 """Most inputs handled in one call: calls long enough that threads share the
 interpreter's lock well, arrays short enough for the processor's cache.  Measured, with
-two threads: 16 gains nothing from the second, 150 no more than 100."""
+two threads: 16 gains nothing from the second, 100 no more than 64."""
 CHUNK = 4
 """Most blocks whose raw numbers are drawn at once: longer calls, and fewer."""
 CHUNK_BYTES = 64 * 2**20
