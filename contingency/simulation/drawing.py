@@ -88,7 +88,7 @@ class Workspace:
 
     def fetch(self, blocks: range) -> None:
         """Draw the raw numbers of all stratified streams for some blocks in a row."""
-        self._raw = raw_blocks(self.source, self._names, blocks)
+        self._raw = raw_blocks(self.source, self._names, blocks, into=self._raw)
         self._fetched = blocks
 
     def cells(self, kind: str, block: int, part: slice = slice(None)) -> Strata:
