@@ -130,10 +130,10 @@ def calibrate(projects: Sequence[ClosedProject]) -> Calibration:
     )
 
 
-def binomial_interval(enough: int, count: int) -> tuple[float, float]:
+def hit_rate_interval(enough: int, count: int) -> tuple[float, float]:
     """Return the 95 % interval of a chance that came true `enough` times of `count`.
 
-    >>> low, high = binomial_interval(9, 12)
+    >>> low, high = hit_rate_interval(9, 12)
     >>> round(low, 3), round(high, 3)
     (0.428, 0.945)
     """
@@ -152,7 +152,7 @@ def _others(projects: Sequence[ClosedProject], place: int) -> LognormalFit:
 
 def _record(records: Sequence[ProjectRecord], percent: int) -> LevelRecord:
     enough = sum(record.percent <= percent for record in records)
-    low, high = binomial_interval(enough, len(records))
+    low, high = hit_rate_interval(enough, len(records))
     return LevelRecord(
         percent=percent, enough=enough, count=len(records), low=low, high=high
     )

@@ -16,8 +16,7 @@ import numpy as np
 from contingency.assurance.material import Material
 from contingency.assurance.wording import counted
 from contingency.estimate.modelled import FEWEST_PROJECTS, projects_like
-from contingency.estimate.nouns import ClosedProject, UpliftPart
-from contingency.quantities.percentiles import rank
+from contingency.estimate.nouns import UpliftPart
 from contingency.quantities.predictive import LognormalFit, fit_lognormal
 
 
@@ -179,12 +178,6 @@ def outside_view(material: Material) -> OutsideView | str:
         points=points,
         positions=_positions(material, points, fit),
     )
-
-
-def empirical_ratio(projects: Sequence[ClosedProject], percent: int) -> float:
-    """Return the smallest ratio that `percent` of the projects do not exceed."""
-    ratios = sorted(project.ratio for project in projects)
-    return ratios[rank(len(ratios), percent) - 1]
 
 
 def _positions(

@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
-from contingency.estimate.nouns import PROJECT_WIDE, Estimate, ShapeName
+from contingency.estimate.nouns import PROJECT_WIDE, Estimate, ShapeName, WorkPackage
 from contingency.report.wording import (
     NOTHING,
     SPACE,
@@ -72,6 +73,11 @@ class BasePage:
     data_date: str
     estimate_class: str
     unit: str
+    grouped_by: str
+    """What a row is: a group, a package, or either."""
+    heading: str
+    """The same as the heading of a column."""
+    has_groups: bool
     rows: tuple[BaseRow, ...]
     total: str
 
@@ -170,6 +176,7 @@ def base_page(study: Study, printed: PrintedFigures, amounts: Amounts) -> BasePa
         )
     ]
     grade = estimate.estimate_class
+    row_is = _grouped_by(packages)
     return BasePage(
         statement=estimate.statements.base.strip()
         or "No statement of the base estimate is given.",
@@ -178,8 +185,23 @@ def base_page(study: Study, printed: PrintedFigures, amounts: Amounts) -> BasePa
         data_date=date(estimate.data_date),
         estimate_class="not stated" if grade is None else str(grade),
         unit=amounts.caption,
+        grouped_by=row_is,
+        heading=row_is.capitalize(),
+        has_groups=row_is != "package",
         rows=tuple(lines),
         total=amounts.cell(printed.total.base),
+    )
+
+
+def _grouped_by(packages: Sequence[WorkPackage]) -> str:
+    """Return what the rows of the base are, by whether the packages name a group."""
+    named = {bool(package.group) for package in packages}
+    return (
+        "group or package"
+        if len(named) == 2
+        else "group"
+        if True in named
+        else "package"
     )
 
 

@@ -6,9 +6,8 @@ import numpy as np
 import pytest
 from scipy import stats
 
-from contingency.assurance.calibration import binomial_interval, calibrate
+from contingency.assurance.calibration import calibrate, hit_rate_interval
 from contingency.assurance.outside_view import (
-    empirical_ratio,
     outside_amounts,
     outside_view,
 )
@@ -145,13 +144,6 @@ def test_without_a_fair_comparison_there_is_none(study, words):
     assert words in outside_view(study())
 
 
-def test_the_empirical_ratio_is_one_that_a_project_reached():
-    """Definition 1 of Hyndman and Fan, as for simulated totals."""
-    assert empirical_ratio(closed(*RATIOS), 50) == 1.13
-    assert empirical_ratio(closed(*RATIOS), 80) == 1.31
-    assert empirical_ratio(closed(*RATIOS), 81) == 1.48
-
-
 def test_a_back_test_leaves_each_project_out():
     """Its percent is its place on what the other nine predict."""
     result = calibrate(closed(*RATIOS))
@@ -185,7 +177,7 @@ def test_the_interval_is_that_of_clopper_and_pearson():
     for enough, count in ((0, 8), (3, 8), (8, 8), (17, 20)):
         exact = stats.binomtest(enough, count).proportion_ci(0.95, "exact")
 
-        assert binomial_interval(enough, count) == pytest.approx(
+        assert hit_rate_interval(enough, count) == pytest.approx(
             (exact.low, exact.high)
         )
 

@@ -473,3 +473,16 @@ def test_covered_is_explained_where_an_event_can_happen_repeatedly(refit, look):
     assert repeated
     assert said in render_html(report, FOLDER)
     assert said not in render_html(other, FOLDER)
+
+
+def test_the_base_is_listed_by_what_the_packages_name(studies, look):
+    """By group, or by package where none names a group; nothing is counted then."""
+    grouped, bare = (pages_of(studies[i], look).report for i in (0, 1))
+    by_group, by_package = grouped.base, bare.base
+    html = render_html(bare, FOLDER)
+
+    assert by_group.grouped_by == "group or package"
+    assert by_package.grouped_by == "package"
+    table = html[html.index('id="base"') :].split("</table>")[0]
+    assert ">Package</th>" in table
+    assert ">Packages</th>" not in table
