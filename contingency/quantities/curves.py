@@ -85,8 +85,6 @@ class _Tables:
 
     value: Array
     """(r * g,) the knots, row after row."""
-    rise: Array
-    """(r * g,) the difference to the next knot."""
     start: NDArray[np.int32]
     """(r, 1) index of each row's knot at score nought."""
 
@@ -102,11 +100,8 @@ def _tabulate(shapes: Sequence[Shape]) -> _Tables:
         else:
             key, location, scale = form
             row[:] = location + scale * shared[key]
-    rise = np.empty_like(rows)
-    np.subtract(rows[:, 1:], rows[:, :-1], out=rise[:, :-1])
-    rise[:, -1] = 0.0
     start = np.arange(len(shapes), dtype=np.int32)[:, None] * (CELLS + 1)
-    return _Tables(value=rows.ravel(), rise=rise.ravel(), start=start + CELLS // 2)
+    return _Tables(value=rows.ravel(), start=start + CELLS // 2)
 
 
 def _shared_knots(keys: Sequence[StandardKey]) -> dict[StandardKey, Array]:
@@ -213,10 +208,12 @@ class Curves:
         near = out.astype(np.int32)
         near += start
         cell = near.astype(np.int64)
-        np.take(tables.rise, cell, out=out, mode="clip")
-        score *= out
         np.take(tables.value, cell, out=out, mode="clip")
-        out += score
+        # At a row's last knot the next one is another row's; it counts nought times.
+        rise = np.take(tables.value[1:], cell, mode="clip")
+        rise -= out
+        rise *= score
+        out += rise
 
     def _read_lognormals(self, score: Array, rows: slice, out: Array) -> None:
         np.multiply(score, self._log_spread[rows], out=score)
