@@ -33,6 +33,9 @@ Steps = NDArray[np.int64]
 REACH = 2
 """Whole numbers on either side of the wanted amount that an arc may take; a closing
 table with less than one step everywhere exists (Bacharach), so two are ample."""
+FURTHER = 1e3
+"""Weight of a step that takes an amount a whole step or more away from the wanted one:
+more than many amounts can gain that are rounded to the nearer side."""
 TIE = 1e-3
 """Weight that decides ties in favour of the earlier line, in steps."""
 
@@ -116,7 +119,9 @@ class _Arc:
     def cost(self, piece: int) -> float:
         """Return what one more step costs; steps further away weigh ever more."""
         change = abs(piece + 1 - self.wanted) - abs(piece - self.wanted)
-        return change * max(1.0, abs(piece + 0.5 - self.wanted)) ** 2
+        if _floor(self.wanted) <= piece < -_floor(-self.wanted):
+            return change
+        return change * FURTHER * max(1.0, abs(piece + 0.5 - self.wanted)) ** 2
 
 
 @dataclass

@@ -51,6 +51,26 @@ def test_every_cell_and_every_sum_is_less_than_a_step_away(table):
     assert np.all(np.abs(sums(closed, groups) - sums(exact, groups)) < 1.0 + 1e-6)
 
 
+def test_no_sum_gives_way_for_several_cells():
+    """Five cells to their nearer side are no reason to print a column wrong."""
+    exact = np.array(
+        [
+            [0.0, 0.0, 0.0],
+            [0.0, 1.75, 0.0],
+            [0.0, 1.375, 1.75],
+            [0.0, 1.3125, 0.0],
+            [0.0, 0.0, 1.625],
+            [0.0, 1.625, 1.5],
+            [0.0, 1.625, -1.25],
+            [0.0, 1.375, 1.75],
+        ]
+    )
+    groups = np.array([0, 0, 0, 0, 1, 1, 1, 2])
+    closed = closed_table(exact, groups, total=14)
+
+    assert np.all(np.abs(sums(closed, groups) - sums(exact, groups)) < 1.0)
+
+
 @given(tables())
 def test_the_total_is_kept(table):
     """Not one step is lost or made."""

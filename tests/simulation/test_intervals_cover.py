@@ -10,7 +10,7 @@ from tests.simulation.estimates import cost_range, estimate, event, package
 
 SEEDS = 400
 PERCENTS = (50, 80, 90)
-TRIALS = 65_536
+TRIALS = 32_768
 
 PERT = cost_range(80, 100, 160)
 LOGNORMAL = cost_range(80, None, 150, shape="lognormal")
