@@ -17,11 +17,11 @@ LOGNORMAL = cost_range(80, None, 150, shape="lognormal")
 IMPACT = cost_range(20, 40, 90)
 
 
-def covered(model, exact):
+def covered(model, exact, seeds=SEEDS):
     """Share of the seeds whose intervals hold the exact value, and mean widths."""
-    hits = np.zeros((SEEDS, len(PERCENTS)), dtype=bool)
-    widths = np.zeros((SEEDS, len(PERCENTS)))
-    for seed in range(SEEDS):
+    hits = np.zeros((seeds, len(PERCENTS)), dtype=bool)
+    widths = np.zeros((seeds, len(PERCENTS)))
+    for seed in range(seeds):
         run = model.run.model_copy(update={"seed": seed})
         result = simulate(model.model_copy(update={"run": run}))
         blocks = result.total.reshape(result.blocks, result.block)
@@ -95,7 +95,8 @@ def test_an_event_whose_probability_sits_at_the_level(capsys, probability, perce
     model = estimate(
         [package("A", narrow)], (event("R", probability, apart),), trials=TRIALS
     )
-    share, width = covered(model, dict.fromkeys(PERCENTS, 130.0))
+    # Nearly every interval holds them, so fewer seeds tell as much.
+    share, width = covered(model, dict.fromkeys(PERCENTS, 130.0), seeds=120)
     at = PERCENTS.index(percent)
     with capsys.disabled():
         print(f"\ngap at P{percent}: coverage {share[at]}, mean width {width[at]:.0f}")
