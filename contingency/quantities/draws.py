@@ -1,10 +1,10 @@
 """Draws that can be found again by name, in Latin hypercube blocks.
 
-One stream belongs to one triple (seed, name, block).  Its key is a BLAKE2b hash
-of the three, its numbers are the raw 64-bit output of the counter generator
-Philox-4x64-10 ([1]_).  Nothing else of numpy's generators is used, so the numbers
-do not depend on the version of a library, and adding, dropping or reordering
-inputs leaves every other input's draws as they were.
+A stream is found by three things: seed, name and block.  A BLAKE2b hash of the first
+two is the key of the counter generator Philox-4x64-10 ([1]_), the block is a stretch
+of its counter, and the numbers are its raw 64-bit output.  Nothing else of numpy's
+generators is used, so the numbers do not depend on the version of a library, and
+adding, dropping or reordering inputs leaves every other input's draws as they were.
 
 Within a block each stream is stratified ([2]_).  A trial has half a raw number, 32
 bits: the order of their upper 20 is the permutation of the strata, the lower 12 are

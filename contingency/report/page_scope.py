@@ -195,14 +195,10 @@ def base_page(study: Study, printed: PrintedFigures, amounts: Amounts) -> BasePa
 
 def _grouped_by(packages: Sequence[WorkPackage]) -> str:
     """Return what the rows of the base are, by whether the packages name a group."""
-    named = {bool(package.group) for package in packages}
-    return (
-        "group or package"
-        if len(named) == 2
-        else "group"
-        if True in named
-        else "package"
-    )
+    grouped = [bool(package.group) for package in packages]
+    if all(grouped):
+        return "group"
+    return "group or package" if any(grouped) else "package"
 
 
 def method_page(study: Study) -> MethodPage:
